@@ -1,0 +1,114 @@
+"""The command line: reads files, writes reports, sets the exit status.
+
+Status 0: nothing at or above the gate. 1: findings at or above it. 2: a file could not be
+read, or the command was misused. With several, the highest.
+"""
+
+import os
+import sys
+from collections.abc import Callable
+from datetime import date
+from pathlib import Path
+from typing import Any, TypeVar
+
+import click
+
+from reglint import __version__, reports
+from reglint.errors import UsageError
+from reglint.finding import Outcome, Run
+from reglint.judge import Wanted
+from reglint.output import write
+from reglint.project import Project
+from reglint.reports import Options
+
+F = TypeVar("F", bound=Callable[..., Any])
+
+_PATHS = click.Path(path_type=Path)
+_GATES = ("fail", "warn", "never")
+
+
+class _Today(click.ParamType):
+    name = "date"
+
+    def convert(self, value: Any, param: Any, ctx: Any) -> date:
+        try:
+            return value if isinstance(value, date) else date.fromisoformat(value)
+        except ValueError:
+            self.fail(f"{value} is no date; write one such as 2027-06-30", param, ctx)
+
+
+@click.group(context_settings={"help_option_names": ["-h", "--help"]})
+@click.version_option(__version__, message="reglint %(version)s")
+def cli() -> None:
+    """Prove that every voltage regulator of a board holds, from specs kept beside it.
+
+    A screening aid: local codes and licensed practice decide.
+    """
+
+
+@cli.command()
+@click.argument("paths", nargs=-1, type=_PATHS)
+@click.option("--report", type=click.Choice(reports.names()), default="text", show_default=True)
+@click.option("--out", type=_PATHS, help="Write the report to a file instead.")
+@click.option("--gate", type=click.Choice(_GATES), help="Outcome from which the status is 1.")
+@click.option("--derating", metavar="NAME", help="Judge every spec under this policy.")
+@click.option("--everything", is_flag=True, help="List passing rules too.")
+@click.option("--today", type=_Today(), help="The day waivers are judged on, as 2027-06-30.")
+@click.option("--colour/--no-colour", default=None, help="Colour, whatever the terminal says.")
+@click.pass_context
+def check(
+    context: click.Context,
+    paths: tuple[Path, ...],
+    report: str,
+    out: Path | None,
+    gate: str | None,
+    derating: str | None,
+    everything: bool,
+    today: date | None,
+    colour: bool | None,
+) -> None:
+    """Check the specs that PATHS lead to; without PATHS, those below this folder."""
+    project = Project(Path.cwd(), derating)
+    specs = project.specs(paths or (Path.cwd(),))
+    wanted = Wanted(today or date.today(), everything, reports.wants_extents(report))
+    run = project.check(specs, wanted)
+    options = Options(everything, out is None and _coloured(colour))
+    write(reports.renderer(report)(run, options), out)
+    context.exit(_status(run, gate or project.gate()))
+
+
+def _status(run: Run, gate: str) -> int:
+    if run.problems:
+        return 2
+    failing = run.count(Outcome.FAIL) + (run.count(Outcome.WARN) if gate == "warn" else 0)
+    return 1 if failing and gate != "never" else 0
+
+
+def _coloured(wish: bool | None) -> bool:
+    """Decide on colour: an explicit wish wins, then the environment, then the terminal."""
+    if wish is not None:
+        return wish
+    if os.environ.get("NO_COLOR") or os.environ.get("TERM") == "dumb":
+        return False
+    return bool(os.environ.get("FORCE_COLOR")) or sys.stdout.isatty()
+
+
+def main() -> None:
+    """Run the command line; a user's mistake ends in a sentence, never in a traceback."""
+    for stream in (sys.stdout, sys.stderr):
+        stream.reconfigure(encoding="utf-8", errors="backslashreplace")  # type: ignore[union-attr]
+    try:
+        status = cli.main(prog_name="reglint", standalone_mode=False)
+    except UsageError as error:
+        click.echo(f"reglint: {error}", err=True)
+        status = 2
+    except click.ClickException as error:
+        error.show()
+        status = 2
+    except (click.Abort, KeyboardInterrupt):
+        click.echo("reglint: stopped; no report was written", err=True)
+        status = 130
+    except BrokenPipeError:
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        status = 141
+    sys.exit(status if isinstance(status, int) else 0)

@@ -1,0 +1,433 @@
+"""YAML files as trees in which every name and value knows its place.
+
+All scalars are read as text; types are the schema's matter. What YAML does behind the
+reader's back (implicit types, anchors, merge keys, tags, the last of two equal names wins)
+is refused at its place or does not happen. A tab between words counts as one blank.
+Trees grow from the parser's events: composed nodes have forgotten the anchors.
+"""
+
+import re
+from collections.abc import Callable, Iterable, Iterator
+from dataclasses import dataclass
+from typing import Any, TypeAlias
+
+import yaml
+
+from reglint.source import TOP, Complaint, Span
+
+#: A spec has some 1,500 bytes; pure Python would need half a minute for more than this.
+MOST_BYTES = 1 << 20
+#: A spec is 5 levels deep. Trees are walked by recursion, which must not meet Python's limit.
+MOST_LEVELS = 24
+#: A spec has some 100 names and values; a file may well hold hundreds of specs.
+MOST_NODES = 50_000
+#: Reading goes on behind a syntax error this often; each time costs a pass over the file.
+_MOST_BREAKS = 20
+
+
+@dataclass(frozen=True, slots=True)
+class Scalar:
+    """A text, and whether it stands without quotes."""
+
+    text: str
+    span: Span
+    plain: bool
+
+
+@dataclass(frozen=True, slots=True)
+class Sequence:
+    """A list; its place is that of its first item, as YAML's end of it runs too far."""
+
+    items: "tuple[Node, ...]"
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Entry:
+    """A name with its value."""
+
+    key: Scalar
+    value: "Node"
+
+
+@dataclass(frozen=True, slots=True)
+class Mapping:
+    """Names with values, in the order of the file; its place is that of its first name."""
+
+    entries: dict[str, Entry]
+    span: Span
+
+
+Node: TypeAlias = Scalar | Mapping | Sequence
+
+
+@dataclass(frozen=True, slots=True)
+class Document:
+    """One document of a file that may hold several."""
+
+    root: Mapping
+    #: Counted from 1; empty documents do not count.
+    index: int
+
+    @property
+    def line(self) -> int:
+        """Return the line of its first name."""
+        return self.root.span.line
+
+
+@dataclass(frozen=True, slots=True)
+class Reading:
+    """The sound documents of a file, and all that is wrong with the others."""
+
+    documents: tuple[Document, ...]
+    complaints: tuple[Complaint, ...]
+
+
+def read(data: bytes) -> Reading:
+    """Read a file's bytes; whatever is wrong with them is a complaint, never an exception."""
+    return _read(data, _FASTEST_PARSER)
+
+
+def plain(node: Node) -> Any:
+    """Return a node as bare ``dict``, ``list`` and ``str``."""
+    if isinstance(node, Scalar):
+        return node.text
+    if isinstance(node, Mapping):
+        return {name: plain(entry.value) for name, entry in node.entries.items()}
+    return [plain(item) for item in node.items]
+
+
+def find(node: Node, path: Iterable[str | int]) -> Node | None:
+    """Return the value at a path of names and list positions, if there is one."""
+    for step in path:
+        entry = _step(node, step)
+        if entry is None:
+            return None
+        node = entry.value
+    return node
+
+
+def span_of(node: Node, path: Iterable[str | int], *, key: bool = False) -> Span:
+    """Return the place of the value at a path, or with ``key`` that of the name before it.
+
+    Where the path leaves the tree, the last value on it stands in for the rest.
+    """
+    span = node.span
+    for step in path:
+        entry = _step(node, step)
+        if entry is None:
+            break
+        node = entry.value
+        span = entry.key.span if key else node.span
+    return span
+
+
+def _step(node: Node, step: str | int) -> Entry | None:
+    """Return what stands at a name or list position; an item is its own name."""
+    if isinstance(node, Mapping):
+        return node.entries.get(step) if isinstance(step, str) else None
+    if isinstance(node, Sequence) and isinstance(step, int) and 0 <= step < len(node.items):
+        item = node.items[step]
+        return Entry(Scalar("", item.span, plain=True), item)
+    return None
+
+
+# ── From bytes to a text whose lines all parsers and editors agree on ─────────────────────
+
+#: Line ends to YAML, but not to every editor: they would shift all lines below.
+_LINE_ENDS = "\v\f\r\x85\u2028\u2029"
+_FOREIGN = re.compile("[\0-\x08\v-\x1f\x7f-\x9f\u2028\u2029\ufeff\ufffe\uffff]")
+_INDENTING_TAB = re.compile(r"^ *(\t)[ \t]*[^ \t\r\n#]", re.MULTILINE)
+_DIRECTIVE = re.compile(r"^%[^\r\n]*", re.MULTILINE)
+_HARMLESS_DIRECTIVE = re.compile(r"%YAML[ \t]+1\.[12][ \t]*(#.*)?")
+
+
+def _read(data: bytes, parser: "_Parser") -> Reading:
+    """Read with a given parser; a text that is not clean is not parsed at all."""
+    if len(data) > MOST_BYTES:
+        size = f"the file has {len(data):,} bytes, more than {MOST_BYTES:,}: split it"
+        return Reading((), (Complaint(TOP, size),))
+    try:
+        text = data.decode().removeprefix("\ufeff")
+    except UnicodeDecodeError as error:
+        return Reading((), (_not_utf8(data, error.start),))
+    if unclean := list(_unclean(text)):
+        return _reading([], unclean)
+    text = _DIRECTIVE.sub(lambda found: " " * len(found[0]), text) if "%YAML" in text else text
+    return _Trees(text.replace("\t", " "), parser).read()
+
+
+def _reading(documents: list[Document], complaints: list[Complaint]) -> Reading:
+    in_order = sorted(complaints, key=lambda one: (one.span, one.message))
+    return Reading(tuple(documents), tuple(in_order))
+
+
+def _not_utf8(data: bytes, start: int) -> Complaint:
+    """Name the byte that is not UTF-8, and the character older programs mean by it."""
+    if data.startswith((b"\xff\xfe", b"\xfe\xff")):
+        return Complaint(TOP, "the file is in UTF-16: save it as UTF-8")
+    before = data[:start].decode().removeprefix("\ufeff")
+    byte = data[start : start + 1]
+    meant = byte.decode("cp1252", "ignore")
+    guess = f" (in Windows-1252 it is {meant})" if meant else ""
+    what = f"byte 0x{byte[0]:02X} at offset {start} is not UTF-8{guess}: save the file as UTF-8"
+    return Complaint(_place(before, len(before)), what)
+
+
+def _unclean(text: str) -> Iterator[Complaint]:
+    """Complain about the first of each character, tab and directive that has no place here."""
+    text = text.replace("\r\n", "\n")
+    for character in sorted(set(_FOREIGN.findall(text))):
+        line_end = character in _LINE_ENDS
+        what = "a line end to some programs only: use LF" if line_end else "no text: delete it"
+        place = _place(text, text.index(character))
+        yield Complaint(place, f"the character U+{ord(character):04X} is {what}")
+    if "\t" in text and (tab := _INDENTING_TAB.search(text)):
+        yield Complaint(_place(text, tab.start(1)), "indent with blanks, not with a tab")
+    for found in _DIRECTIVE.finditer(text) if text[:1] == "%" or "\n%" in text else ():
+        if not _HARMLESS_DIRECTIVE.fullmatch(found[0]):
+            what = f"{_short(found[0])} is not read: only %YAML 1.2 may begin a line with %"
+            yield Complaint(_place(text, found.start()), what)
+
+
+def _place(text: str, index: int, length: int = 1) -> Span:
+    """Return the place of a stretch within one line."""
+    line = text.count("\n", 0, index) + 1
+    column = index - text.rfind("\n", 0, index)
+    return Span(line, column, line, column + length)
+
+
+def _short(text: str, most: int = 48) -> str:
+    text = text.strip()
+    return text if len(text) <= most else f"{text[: most - 1]}…"
+
+
+# ── From the text to trees ────────────────────────────────────────────────────────────────
+
+_DOCUMENT = re.compile(r"^---(?=[ \r\n]|\Z)", re.MULTILINE)
+_PROPERTY = re.compile(r"\s*([&!][^\s\[\]{},]*)")
+_QUOTE = "put the text in quotes"
+
+
+class _Trees:
+    """The trees of one file while they grow."""
+
+    def __init__(self, text: str, parser: "_Parser") -> None:
+        self.text, self.parser = text, parser
+        #: libyaml hides a tag that is a lone ``!``; only files with a ``!`` are searched for it.
+        self.bang = "!" in text
+        self.complaints: list[Complaint] = []
+        self.documents: list[Document] = []
+        self.index = self.nodes = 0
+
+    def read(self) -> Reading:
+        start, breaks = 0, 0
+        while start < len(self.text) and self.nodes <= MOST_NODES and breaks < _MOST_BREAKS:
+            start, breaks = self._read_from(start), breaks + 1
+        if not self.index and not self.complaints:
+            self._complain(TOP, "the file is empty: write a first line such as format: 1")
+        return _reading(self.documents, self.complaints)
+
+    def _read_from(self, start: int) -> int:
+        """Read up to the end, or to a break; return where the next document begins."""
+        # Blanks in place of what was read keep all lines and indices true.
+        rest = re.sub(r"[^\r\n]", " ", self.text[:start]) + self.text[start:]
+        self.next = self.parser(rest).get_event
+        try:
+            while type(event := self.next()) is not yaml.StreamEndEvent:
+                if type(event) is yaml.DocumentStartEvent:
+                    self._document()
+        except yaml.MarkedYAMLError as error:
+            stop = max(self._break_off(error), start + 3)
+            if following := _DOCUMENT.search(self.text, stop):
+                return following.start()
+        return len(self.text)
+
+    def _document(self) -> None:
+        """Read one document, unless it is empty; keep it if it is sound."""
+        event = self.next()
+        if type(event) is yaml.ScalarEvent and event.start_mark.index == event.end_mark.index:
+            return
+        self.index += 1
+        before = len(self.complaints)
+        root = self._node(event, 1)
+        self.next()
+        if not isinstance(root, Mapping):
+            what = "a list" if isinstance(root, Sequence) else "a single text"
+            self._complain(root.span, f'a document has lines "name: value"; this is {what}')
+        elif len(self.complaints) == before:
+            self.documents.append(Document(root, self.index))
+
+    def _node(self, event: Any, level: int) -> Node:
+        """Read the value that an event begins; most are texts, so they come first."""
+        if type(event) is not yaml.ScalarEvent:
+            return self._other(event, level)
+        if event.tag or event.anchor or self.bang:
+            self._refuse_properties(event)
+        style = event.style
+        span = self._block_span(event) if style and style in "|>" else _span(event, event)
+        return Scalar(event.value, span, not style)
+
+    def _other(self, event: Any, level: int) -> Node:
+        if type(event) is yaml.AliasEvent:
+            span = _span(event, event)
+            self._complain(span, f"the alias *{event.anchor} is not read: state the value, or {_QUOTE}")
+            return Scalar("", span, plain=False)
+        if event.tag or event.anchor:
+            self._refuse_properties(event)
+        if level > MOST_LEVELS:
+            raise yaml.MarkedYAMLError(None, None, _TOO_DEEP, event.start_mark)
+        read = self._mapping if type(event) is yaml.MappingStartEvent else self._sequence
+        return read(event, level + 1)
+
+    def _mapping(self, start: Any, level: int) -> Mapping:
+        entries: dict[str, Entry] = {}
+        while type(event := self.next()) is not yaml.MappingEndEvent:
+            key = self._node(event, level)
+            value = self._node(self.next(), level)
+            self._enter(entries, key, value)
+        self._count(start, 2 * len(entries))
+        first = next(iter(entries.values()), None)
+        return Mapping(entries, first.key.span if first else _span(start, event))
+
+    def _sequence(self, start: Any, level: int) -> Sequence:
+        items: list[Node] = []
+        while type(event := self.next()) is not yaml.SequenceEndEvent:
+            items.append(self._node(event, level))
+        self._count(start, len(items))
+        return Sequence(tuple(items), items[0].span if items else _span(start, event))
+
+    def _count(self, event: Any, more: int) -> None:
+        self.nodes += more
+        if self.nodes > MOST_NODES:
+            raise yaml.MarkedYAMLError(None, None, _TOO_MANY, event.start_mark)
+
+    def _enter(self, entries: dict[str, Entry], key: Node, value: Node) -> None:
+        """Add a name with its value to those before, or complain about the name."""
+        if isinstance(value, Scalar) and value.plain and not value.text:
+            value = self._nothing(key)
+        if not isinstance(key, Scalar):
+            self._complain(key.span, "a name is a text: put one that begins with [ or { in quotes")
+        elif not key.text:
+            self._complain(key.span, "a name is missing before the colon")
+        elif key.text == "<<" and key.plain:
+            self._complain(key.span, "the merge key << is not read: write its lines out")
+        elif key.text in entries:
+            line = entries[key.text].key.span.line
+            what = f"{_short(key.text)} is stated twice, first in line {line}: delete one"
+            self._complain(key.span, what)
+        else:
+            entries[key.text] = Entry(key, value)
+
+    def _nothing(self, key: Node) -> Scalar:
+        """Return the empty value behind a name; the parsers disagree about its place."""
+        if isinstance(key, Scalar) and key.plain and ":" in key.text:
+            name, _, rest = _short(key.text).partition(":")
+            advice = f"put a blank after the colon, {name}: {rest}".rstrip()
+            self._complain(key.span, f"{name}:{rest} is a name without a value: {advice}")
+        end = key.span.end_line, key.span.end_column
+        return Scalar("", Span(*end, *end), plain=True)
+
+    def _block_span(self, event: Any) -> Span:
+        """Return the place of a block text without the blank lines below it."""
+        raw = self.text[event.start_mark.index : event.end_mark.index]
+        shown = raw[: raw.find("\n", len(raw.rstrip(" \r\n"))) % (len(raw) + 1)].rstrip("\r")
+        if "\n" not in shown:
+            shown = re.split(r"[ \r]", shown, maxsplit=1)[0]
+        start, lines = _span(event, event), shown.count("\n")
+        column = len(shown) - shown.rfind("\n") if lines else start.column + len(shown)
+        return Span(start.line, start.column, start.line + lines, column)
+
+    def _refuse_properties(self, event: Any) -> None:
+        """Complain about the anchor and the tag in front of a value."""
+        index = event.start_mark.index
+        while found := _PROPERTY.match(self.text, index):
+            index, sign = found.end(), found[1]
+            span = _place(self.text, found.start(1), len(sign))
+            what = "anchor" if sign[0] == "&" else "tag"
+            self._complain(span, f"the {what} {_short(sign)} is not read: delete it, or {_QUOTE}")
+
+    def _complain(self, span: Span, message: str) -> None:
+        self.complaints.append(Complaint(span, message))
+
+    def _break_off(self, error: Any) -> int:
+        """Say in our words what YAML refuses, and return where reading stopped."""
+        text, said = self.text, f"{error.context}: {error.problem}"
+        if "document start" in said:
+            # Text behind a document without a new start belongs to it: its indentation broke.
+            self.documents = [one for one in self.documents if one.index != self.index]
+        at, sentence = next(row[1:] for row in _SYNTAX if re.search(row[0], said))
+        # Indices only: of a last line without line end libyaml says that it is one further down.
+        stop: int = error.problem_mark.index
+        index = error.context_mark.index if error.context_mark else stop
+        if at == "here" or (at == "line" and "\n" not in text[index:stop]):
+            index = stop
+        line = text[text.rfind("\n", 0, index) + 1 :].partition("\n")[0]
+        self._complain(_place(text, index), f"{sentence} (in: {_short(line)})")
+        return stop
+
+
+def _span(first: Any, last: Any) -> Span:
+    start, end = first.start_mark, last.end_mark
+    return Span(start.line + 1, start.column + 1, end.line + 1, end.column + 1)
+
+
+# ── What YAML itself refuses, and the parser for where libyaml is missing ─────────────────
+
+_TOO_DEEP = f"this is nested more than {MOST_LEVELS} levels deep: flatten it"
+_TOO_MANY = f"the file has more than {MOST_NODES:,} names and values: split it"
+#: What both parsers say; whether the place is here, where the construct began, or there only
+#: if that is on another line; and what we say.
+_SYNTAX = (
+    ("nesting depth|is nested", "here", _TOO_DEEP),
+    (_TOO_MANY, "here", _TOO_MANY),
+    ("mapping values", "here", f'no ": " can stand here: check the indentation and the line above, or {_QUOTE}'),
+    ("sequence entries", "here", 'a list cannot begin here: begin a line with "- "'),
+    ("find expected ':'", "start", 'this is no "name: value": put a blank after the colon'),
+    ("unexpected ':'", "here", "put a blank after the colon"),
+    ("expected ',' or", "line", "a comma or the closing bracket is missing"),
+    ("node content", "here", "a value is missing before this"),
+    ("quoted scalar: found unexpected", "start", "this quote is not closed"),
+    ("quoted scalar", "start", r"a \ in double quotes begins an escape: use single quotes"),
+    ("block scalar", "start", "only + or - and a digit may stand behind | and >"),
+    ("any token|an alias|an anchor| tag", "start", "put a text that begins like this in quotes"),
+    ("", "here", f"this does not fit the lines above: check the indentation, or {_QUOTE}"),
+)
+
+
+class _PureParser(yaml.BaseLoader):
+    """PyYAML's parser in Python, brought to agree with libyaml."""
+
+    in_plain = False
+
+    def peek(self, index: int = 0) -> str:
+        # A ? within a text without quotes would end it in brackets; not so in libyaml.
+        character: str = super().peek(index)
+        return "x" if character == "?" and self.in_plain else character
+
+    def scan_plain(self) -> Any:
+        self.in_plain = True
+        token = super().scan_plain()
+        self.in_plain = False
+        return token
+
+    def check_value(self) -> Any:
+        # libyaml refuses {a:[1]}.
+        glued = self.pointer and self.buffer[self.pointer - 1] not in " \r\n'\"[]{},"
+        if self.flow_level and glued and self.peek(1) in ",?[]{}":
+            raise yaml.MarkedYAMLError(None, None, "unexpected ':'", self.get_mark())
+        return super().check_value()
+
+    def scan_flow_scalar(self, style: str) -> Any:
+        # libyaml refuses escapes that are no character, such as half a surrogate pair.
+        start = self.get_mark()
+        try:
+            token = super().scan_flow_scalar(style)
+            token.value.encode()
+        except ValueError:
+            raise yaml.MarkedYAMLError("quoted scalar", start, "escape", start) from None
+        return token
+
+
+_Parser: TypeAlias = Callable[[str], Any]
+_FASTEST_PARSER: _Parser = yaml.CBaseLoader if yaml.__with_libyaml__ else _PureParser

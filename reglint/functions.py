@@ -1,0 +1,109 @@
+"""What a formula may call, for each kind of number a formula can be evaluated with.
+
+A kind of number supplies Python's arithmetic operators itself; what operators cannot
+say (constants, functions, roots) is its `Arithmetic`.
+"""
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from typing import Any, Generic, TypeAlias, TypeVar
+
+import numpy as np
+import numpy.typing as npt
+
+from reglint import dimension, roots
+from reglint.dimension import Dimension
+from reglint.preferred import off_preferred
+
+#: Any kind of number: it must support ``+ - * / **`` and unary minus.
+T = TypeVar("T")
+
+Array: TypeAlias = npt.NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True)
+class Arithmetic(Generic[T]):
+    """How one kind of number does what operators cannot say."""
+
+    #: A number of this kind from a value in SI units and its dimension.
+    constant: Callable[[float, Dimension], T]
+    #: The functions of the formula language by name.
+    functions: Mapping[str, Callable[..., T]]
+    #: The root of a falling residual: ``(residual, low, high, below) -> root``.
+    solve: Callable[[Callable[[T], T], T, T, T], T]
+
+
+def _knee(ratio: Array, exponent: Array) -> Array:
+    """Integrate ``u**-exponent`` from 1 to ``ratio``: ``(x**(1-m) - 1)/(1-m)``, ``ln x`` at m = 1."""
+    log, power = np.log(ratio), 1.0 - np.asarray(exponent)
+    flat = power == 0.0
+    return np.where(flat, log, np.expm1(power * log) / np.where(flat, 1.0, power))
+
+
+def _falling(value: Array, full_until: Array, zero_at: Array) -> Array:
+    """Fall linearly from 1 at ``full_until`` to 0 at ``zero_at``; a step where they coincide."""
+    width = np.asarray(zero_at - full_until)
+    slope = np.clip((zero_at - value) / np.where(width > 0.0, width, 1.0), 0.0, 1.0)
+    share = np.where(width > 0.0, slope, np.where(value <= full_until, 1.0, 0.0))
+    return np.where(np.isnan(width + value), np.nan, share)
+
+
+def _if_positive(test: Array, yes: Array, no: Array) -> Array:
+    """Choose ``yes`` where the test is positive, ``no`` where it is not, NaN where it is NaN."""
+    return np.where(np.isnan(test), np.nan, np.where(test > 0.0, yes, no))
+
+
+def _fold(pairwise: Callable[[Any, Any], Any]) -> Callable[..., Array]:
+    def folded(first: Array, *rest: Array) -> Array:
+        for other in rest:
+            first = pairwise(first, other)
+        return first
+
+    return folded
+
+
+def _off_preferred(value: Array, tolerance: Array) -> Array:
+    """Compare element by element: the series is a table, not a formula."""
+    return np.vectorize(off_preferred, otypes=[float])(value, tolerance)
+
+
+def _plain_constant(value: float, _dimension: Dimension) -> Array:
+    return np.float64(value)  # type: ignore[return-value]  # a scalar broadcasts like an array
+
+
+#: Floats and arrays of them: corners, samples, nominal values.
+REAL: Arithmetic[Array] = Arithmetic(
+    constant=_plain_constant,
+    functions={
+        "min": _fold(np.minimum),
+        "max": _fold(np.maximum),
+        "abs": np.abs,
+        "sqrt": np.sqrt,
+        "exp": np.exp,
+        "log": np.log,
+        "knee": _knee,
+        "falling": _falling,
+        "if_positive": _if_positive,
+        "off_preferred": _off_preferred,
+    },
+    solve=roots.falling_root,
+)
+
+
+def _dimension_of_root(
+    residual: Callable[[Dimension], Dimension], low: Dimension, high: Dimension, below: Dimension
+) -> Dimension:
+    """Check both sides of an equation once; its ends must share the unknown's dimension."""
+    residual(low)
+    return dimension.FUNCTIONS["max"](low, high, below)
+
+
+#: Dimensions alone: the check of every formula when its file is read.
+DIMENSIONS: Arithmetic[Dimension] = Arithmetic(
+    constant=lambda _value, of: of,
+    functions=dimension.FUNCTIONS,
+    solve=_dimension_of_root,
+)
+
+#: The words the formula language knows.
+NAMES = frozenset(REAL.functions)

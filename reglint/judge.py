@@ -1,0 +1,161 @@
+"""Judgement: specs against the rules of their kind, everything alike at once."""
+
+from collections import defaultdict
+from collections.abc import Iterable, Iterator, Mapping, Sequence
+from dataclasses import dataclass
+from datetime import date
+
+from reglint import ruling, waiver
+from reglint.box import Box, box_of, numbers_of
+from reglint.circuit import Circuit
+from reglint.extent import extents
+from reglint.finding import Extent, Finding, Outcome, Verdict
+from reglint.margin import Margin
+from reglint.rule import Rule
+from reglint.shares import shares
+from reglint.spec import Spec
+from reglint.worstcase import Worst, at, worst
+
+
+@dataclass(frozen=True, slots=True)
+class Wanted:
+    """What a report needs beside the findings that are no pass."""
+
+    today: date
+    #: Passing rules as findings too.
+    everything: bool = False
+    #: The range of every quantity under every condition.
+    extents: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class Case:
+    """A spec with what it is judged by."""
+
+    spec: Spec
+    circuit: Circuit
+    rules: Mapping[str, Rule]
+
+
+def judge(cases: Sequence[Case], wanted: Wanted) -> list[Verdict]:
+    """Return a verdict for each case, in their order."""
+    verdicts: dict[int, Verdict] = {}
+    for rows in _batches(cases):
+        batch = [cases[row] for row in rows]
+        verdicts |= zip(rows, _judge_batch(batch, wanted), strict=True)
+    return [verdicts[row] for row in range(len(cases))]
+
+
+def _batches(cases: Sequence[Case]) -> Iterable[list[int]]:
+    """Group cases of one circuit, rules and set of varying names: they become one array."""
+    batches = defaultdict(list)
+    for row, case in enumerate(cases):
+        varying = frozenset(
+            name for name, terms in case.spec.swept.items() if any(t.low != t.high for t in terms)
+        )
+        batches[id(case.circuit), id(case.rules), varying].append(row)
+    return batches.values()
+
+
+def _judge_batch(batch: Sequence[Case], wanted: Wanted) -> Iterator[Verdict]:
+    circuit, rules = batch[0].circuit, batch[0].rules
+    specs = [case.spec for case in batch]
+    numbers = numbers_of(circuit, specs)
+    conditions = circuit.kind.conditions
+    boxes = {name: box_of(circuit, each, specs, numbers) for name, each in conditions.items()}
+    ranges = extents(boxes) if wanted.extents else [()] * len(specs)
+    findings = _findings(boxes, rules, wanted)
+    for spec, found, range_ in zip(specs, findings, ranges, strict=True):
+        yield _verdict(spec, rules, found, range_, wanted)
+
+
+def _verdict(
+    spec: Spec,
+    rules: Mapping[str, Rule],
+    found: Mapping[str, Finding | None],
+    ranges: tuple[Extent, ...],
+    wanted: Wanted,
+) -> Verdict:
+    """Put a spec's findings in order, its waivers applied; ``None`` marks a skipped rule."""
+    listed = [each for each in found.values() if each is not None]
+    skipped = tuple(name for name, each in found.items() if each is None)
+    applied = list(waiver.apply(listed, spec.waivers, rules.keys(), wanted.today))
+    passed = sum(each.outcome is Outcome.PASS for each in applied)
+    shown = [e for e in applied if wanted.everything or e.outcome is not Outcome.PASS]
+    return Verdict(spec, rules, tuple(shown), passed, skipped, ranges)
+
+
+def _findings(
+    boxes: Mapping[str, Box], rules: Mapping[str, Rule], wanted: Wanted
+) -> list[dict[str, Finding | None]]:
+    """Return every spec's findings by rule; passes are bare unless they are wanted."""
+    count = len(next(iter(boxes.values())).specs)
+    found: list[dict[str, Finding | None]] = [dict.fromkeys(rules) for _ in range(count)]
+    by_condition = defaultdict(list)
+    for rule in rules.values():
+        by_condition[rule.condition].append(rule)
+    for condition, group in by_condition.items():
+        box = boxes[condition]
+        checkable = [_checkable(box, rule, found) for rule in group]
+        worsts = worst(box, [Margin(rule) for rule in group])
+        for rule, rows, result in zip(group, checkable, worsts, strict=True):
+            for row, finding in _judged(box, rule, rows, result, wanted):
+                found[row][rule.name] = finding
+    return found
+
+
+def _checkable(box: Box, rule: Rule, found: list[dict[str, Finding | None]]) -> list[int]:
+    """Return the specs a rule can be evaluated for; the others get their finding at once."""
+    asked = _asked(box, rule)
+    uncovered = sorted(asked & box.circuit.not_covered.keys())
+    rows = []
+    for row, spec in enumerate(box.specs):
+        missing = sorted(name for name in asked if not spec.has(name))
+        stated = [name for name in missing if name not in uncovered]
+        assumed = [name for name in rule.needs if name in spec.neglected]
+        if not missing and not assumed:
+            rows.append(row)
+        elif not (stated and rule.optional):
+            found[row][rule.name] = ruling.not_checked(
+                box.circuit, rule, spec, stated + assumed, uncovered
+            )
+    return rows
+
+
+def _asked(box: Box, rule: Rule) -> frozenset[str]:
+    """Return the stated names a rule's formulas depend on."""
+    reach = frozenset[str]().union(*(box.circuit.reach_of(each) for each in rule.formulas()))
+    return reach - box.circuit.quantities.keys() - box.condition.fixes.keys()
+
+
+def _judged(
+    box: Box, rule: Rule, rows: Sequence[int], result: Worst, wanted: Wanted
+) -> Iterator[tuple[int, Finding]]:
+    """Yield the findings of one rule for the specs it could be evaluated for."""
+    margins = {row: float(result.value[row]) for row in rows}
+    outcomes = {row: ruling.outcome(rule, box.specs[row], margins[row]) for row in rows}
+    shown = [row for row in rows if wanted.everything or outcomes[row] is not Outcome.PASS]
+    for row in set(rows).difference(shown):
+        yield row, ruling.bare_pass(rule)
+    if not shown:
+        return
+    part, points = box.take(shown), result.point[shown]
+    values, limits = (
+        at(part, lambda v, side=side: v.of(side), points[:, None, :])[:, 0]
+        for side in (rule.holds.value, rule.holds.limit)
+    )
+    eaten = shares(part, Margin(rule), points)
+    asked = _asked(box, rule)
+    for index, row in enumerate(shown):
+        worst_point = ruling.WorstPoint(
+            value=float(values[index]),
+            limit=float(limits[index]),
+            margin=margins[row],
+            corner={
+                name: float(value)
+                for name, value in zip(box.names, points[index], strict=True)
+                if name in asked
+            },
+            shares=eaten[index],
+        )
+        yield row, ruling.finding(box.circuit, rule, box.specs[row], outcomes[row], worst_point)

@@ -1,0 +1,223 @@
+"""A project on disk: which files are specs, and what a check of them comes to."""
+
+import os
+import re
+import subprocess
+from collections.abc import Iterable, Iterator, Sequence
+from dataclasses import dataclass, field
+from functools import cache
+from pathlib import Path
+
+from reglint.document import Document, Scalar, find, read
+from reglint.draft import read_spec
+from reglint.errors import UsageError
+from reglint.files import Folder, read_bytes
+from reglint.finding import Run
+from reglint.judge import Case, Wanted, judge
+from reglint.nearest import hint
+from reglint.rulebook import Rulebook
+from reglint.kind import Kind
+from reglint.schema import Schema, complaints
+from reglint.settings import NAME, Settings, read_settings, root_above
+from reglint.source import TOP, Complaint, Problem
+from reglint.spec import Spec
+from reglint.spec_schema import spec_schema
+
+@dataclass(slots=True)
+class Home:
+    """Settings and the rulebook they lead to: what specs under one root share."""
+
+    settings: Settings
+    rulebook: Rulebook
+    problems: list[Problem]
+    schemas: dict[str, Schema] = field(default_factory=dict)
+
+    def schema(self, kind: Kind) -> Schema:
+        """Return the schema of a kind's specs, generated once."""
+        if kind.name not in self.schemas:
+            self.schemas[kind.name] = spec_schema(kind)
+        return self.schemas[kind.name]
+
+
+@dataclass(slots=True)
+class Project:
+    """Reads specs below a working folder; paths are shown relative to it."""
+
+    folder: Path
+    #: Takes the place of every spec's and the settings' own policy.
+    derating: str | None = None
+    homes: dict[Path, Home] = field(default_factory=dict)
+
+    def show(self, path: Path) -> str:
+        """Return how a path is shown: relative, with ``/``."""
+        return Path(os.path.relpath(path, self.folder)).as_posix()
+
+    def home(self, path: Path) -> Home:
+        """Return the home of a file: of the nearest settings above it, or a bare one."""
+        root = root_above(path.parent)
+        key = root or self.folder
+        if key not in self.homes:
+            self.homes[key] = self._home(root)
+        return self.homes[key]
+
+    def gate(self) -> str:
+        """Return the strictest gate of the settings met."""
+        gates = {home.settings.gate for home in self.homes.values()} or {"fail"}
+        return min(gates, key=("warn", "fail", "never").index)
+
+    def _home(self, root: Path | None) -> Home:
+        if root is None:
+            return Home(Settings(self.folder), Rulebook(), [])
+        settings, found = read_settings(root)
+        shown = self.show(root / NAME)
+        rulebook = Rulebook(
+            [self._folder(root, name) for name in settings.rules],
+            [self._folder(root, name) for name in settings.parts],
+        )
+        return Home(settings, rulebook, [Problem(shown, c.span, c.message) for c in found])
+
+    def _folder(self, root: Path, name: str) -> Folder:
+        return Folder(root / name, self.show(root / name))
+
+    def check(self, paths: Iterable[Path], wanted: Wanted) -> Run:
+        """Check the specs that paths lead to; one bad file never stops the others."""
+        cases: list[Case] = []
+        problems: list[Problem] = []
+        for path in paths:
+            read_cases, found = self.read(path)
+            cases += read_cases
+            problems += found
+        verdicts = judge(cases, wanted)
+        for home in self.homes.values():
+            problems += home.problems + home.rulebook.problems
+        return Run(tuple(verdicts), tuple(sorted(set(problems))))
+
+    def read(self, path: Path) -> tuple[list[Case], list[Problem]]:
+        """Read the specs of one file."""
+        shown = self.show(path)
+        data = read_bytes(path)
+        if isinstance(data, str):
+            return [], [Problem(shown, TOP, data)]
+        reading, home = read(data), self.home(path)
+        found, cases = list(reading.complaints), []
+        for document in reading.documents:
+            case = self._case(document, home, shown, found)
+            if case is not None:
+                cases.append(case)
+        found += _repeated([case.spec for case in cases])
+        return cases, [Problem(shown, each.span, each.message) for each in found]
+
+    def _case(
+        self, document: Document, home: Home, shown: str, found: list[Complaint]
+    ) -> Case | None:
+        """Read one spec and join it with what judges it; complaints go to ``found``."""
+        book = home.rulebook
+        node = find(document.root, ("kind",))
+        name = node.text if isinstance(node, Scalar) else ""
+        kind = book.kind(name) if name in book.kind_names() else None
+        if kind is None:
+            found.append(_no_kind(document, node, name, book))
+            return None
+        wrong = complaints(document.root, home.schema(kind))
+        spec, unread = read_spec(document, kind, book.part, shown, home.settings.derating)
+        said = {each.span for each in wrong}
+        wrong += [each for each in unread if each.span not in said]
+        policy = book.policy(name := self.derating or spec.derating) if spec else None
+        if spec and policy is None:
+            known = book.policy_names()
+            wrong.append(
+                Complaint(
+                    spec.place("derating"),
+                    f"there is no derating policy {name}{hint(name, known)}"
+                    f" (known: {', '.join(known)})",
+                )
+            )
+        found += sorted(wrong, key=lambda each: each.span)
+        if wrong or spec is None or policy is None:
+            return None
+        return Case(spec, book.circuit(kind, policy, spec.styles), book.rules(kind))
+
+    def specs(self, paths: Sequence[Path]) -> list[Path]:
+        """Return the spec files that paths lead to, sorted as they are shown.
+
+        A folder stands for the specs below it; a file of knowledge or settings stands
+        for the whole project it belongs to. Raises `UsageError` for a path that does
+        not exist and for one that leads to no spec.
+        """
+        found: set[Path] = set()
+        for path in paths:
+            if not path.exists():
+                raise UsageError(f"{self.show(path)}: there is no such file or folder")
+            below = [path] if _is_spec_name(path) else list(self._below(path))
+            if not below:
+                raise UsageError(f"{self.show(path)}: there is no spec here (*.reg.yaml)")
+            found.update(below)
+        return sorted(found, key=self.show)
+
+    def _below(self, path: Path) -> Iterator[Path]:
+        folder = path if path.is_dir() else root_above(path.parent) or path.parent
+        for each in _listed(folder):
+            home = self.home(each)
+            inner = each.relative_to(home.settings.root) if _inside(each, home) else each
+            if any(_matches(inner.as_posix(), glob) for glob in home.settings.specs):
+                yield each
+
+
+def _no_kind(document: Document, node: object, name: str, book: Rulebook) -> Complaint:
+    known = book.kind_names()
+    listed = ", ".join(known)
+    if not isinstance(node, Scalar):
+        return Complaint(document.root.span, f"kind is missing; write one of: {listed}")
+    if name in known:
+        return Complaint(node.span, f"the kind {name} cannot be used: its file is unsound")
+    return Complaint(node.span, f"there is no kind {name}{hint(name, known)} (known: {listed})")
+
+
+def _repeated(specs: Sequence[Spec]) -> Iterator[Complaint]:
+    seen: dict[str, Spec] = {}
+    for spec in specs:
+        if spec.name in seen:
+            first = seen[spec.name].place("name").line
+            message = f"the name {spec.name} is taken by the spec whose name is on line {first}"
+            yield Complaint(spec.place("name"), message)
+        seen.setdefault(spec.name, spec)
+
+
+def _is_spec_name(path: Path) -> bool:
+    """Tell whether a path that was named is to be read as a spec, whatever the patterns say."""
+    knowledge = path.name.endswith((".part.yaml", ".part.yml")) or path.name == NAME
+    in_rules = (path.parent / "kind.yaml").exists() or path.parent.name == "derating"
+    return path.is_file() and not knowledge and not in_rules
+
+
+def _inside(path: Path, home: Home) -> bool:
+    return path.is_relative_to(home.settings.root)
+
+
+def _listed(folder: Path) -> Iterator[Path]:
+    """Yield the files below a folder: those git knows or would add, or all where there is no git."""
+    names = _known_to_git(folder)
+    paths = folder.rglob("*") if names is None else (folder / name for name in set(names))
+    yield from sorted(path for path in paths if path.is_file())
+
+
+def _known_to_git(folder: Path) -> list[str] | None:
+    """Return the files git tracks or would add below a folder, or nothing outside of git."""
+    command = ["git", "ls-files", "-z", "--cached", "--others", "--exclude-standard"]
+    try:
+        listing = subprocess.run(command, cwd=folder, capture_output=True, check=True)  # noqa: S603
+    except (OSError, subprocess.CalledProcessError):
+        return None  # no git, or no repository: the folder itself is what there is
+    return [os.fsdecode(name) for name in listing.stdout.split(b"\0") if name]
+
+
+@cache
+def _pattern(glob: str) -> re.Pattern[str]:
+    """Translate a path pattern: ``**/`` is any folders, ``*`` and ``?`` stay inside a name."""
+    pieces = re.split(r"(\*\*/|\*|\?)", glob)
+    words = {"**/": "(?:.*/)?", "*": "[^/]*", "?": "[^/]"}
+    return re.compile("".join(words.get(each, re.escape(each)) for each in pieces))
+
+
+def _matches(path: str, glob: str) -> bool:
+    return _pattern(glob).fullmatch(path) is not None

@@ -1,0 +1,107 @@
+"""The JSON report, format 1: everything a program may want, in SI units and °C."""
+
+import json
+import math
+from typing import Any
+
+from reglint import __version__
+from reglint.finding import Extent, Finding, Outcome, Run, Share, Verdict
+from reglint.reports import Options
+from reglint.source import Problem
+
+_FORMAT = 1
+#: The report gives the range of every quantity.
+EXTENTS = True
+
+
+def render(run: Run, _options: Options) -> str:
+    """Return the report as JSON with stable field names, one trailing line end."""
+    report = {
+        "format": _FORMAT,
+        "reglint": __version__,
+        "counts": {
+            **{outcome.value: run.count(outcome) for outcome in Outcome},
+            "waived": run.waived,
+            "unreadable": run.unreadable,
+        },
+        "specs": [_spec(verdict) for verdict in run.verdicts],
+        "problems": [_problem(each) for each in run.problems],
+    }
+    return json.dumps(report, indent=2, ensure_ascii=False, allow_nan=False) + "\n"
+
+
+def _spec(verdict: Verdict) -> dict[str, Any]:
+    spec = verdict.spec
+    return {
+        "file": spec.file,
+        "line": spec.line,
+        "name": spec.name,
+        "kind": spec.kind.name,
+        "derating": spec.derating,
+        "outcome": verdict.outcome.value,
+        "assumptions": [{"field": each.path, "says": each.says} for each in spec.assumptions],
+        "quantities": {_key(each): _extent(each) for each in verdict.extents},
+        "findings": [_finding(each) for each in verdict.findings],
+        "skipped": list(verdict.skipped),
+    }
+
+
+def _key(extent: Extent) -> str:
+    """Name a quantity; its condition is added unless it is the plain one."""
+    plain = extent.condition == "loaded"
+    return extent.quantity if plain else f"{extent.quantity}@{extent.condition}"
+
+
+def _extent(extent: Extent) -> dict[str, Any]:
+    return {
+        "unit": extent.unit,
+        "condition": extent.condition,
+        "min": _number(extent.min),
+        "nom": _number(extent.nom),
+        "max": _number(extent.max),
+    }
+
+
+def _finding(finding: Finding) -> dict[str, Any]:
+    return {
+        "rule": finding.rule,
+        "outcome": finding.outcome.value,
+        "waived": finding.waived,
+        "condition": finding.condition,
+        "value": _number(finding.value),
+        "limit": _number(finding.limit),
+        "unit": finding.unit,
+        "margin": _number(finding.margin),
+        "proven": finding.proven,
+        "bound": _number(finding.bound),
+        "line": finding.span.line,
+        "column": finding.span.column,
+        "message": finding.message,
+        "notes": list(finding.notes),
+        "remedy": finding.remedy,
+        "corner": {name: _number(value) for name, value in (finding.corner or {}).items()},
+        "shares": [_share(each) for each in finding.shares],
+    }
+
+
+def _share(share: Share) -> dict[str, Any]:
+    return {
+        "field": share.path,
+        "share": _number(share.share),
+        "line": share.span.line,
+        "column": share.span.column,
+    }
+
+
+def _problem(problem: Problem) -> dict[str, Any]:
+    return {
+        "file": problem.file,
+        "line": problem.span.line,
+        "column": problem.span.column,
+        "message": problem.message,
+    }
+
+
+def _number(value: float | None) -> float | None:
+    """Return a finite number to twelve digits; JSON has no infinity, so null stands for one."""
+    return float(f"{value:.12g}") if value is not None and math.isfinite(value) else None

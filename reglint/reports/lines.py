@@ -1,0 +1,30 @@
+"""One line a finding, in the form GNU's coding standards give for error messages."""
+
+from collections.abc import Iterator
+
+from reglint.finding import Finding, Outcome, Run, Verdict
+from reglint.printable import printable
+from reglint.reports import Options
+
+
+def render(run: Run, options: Options) -> str:
+    """Return ``file:line:column: outcome: rule: message`` for every finding and problem."""
+    lines = [
+        f"{problem.file}:{problem.span.line}:{problem.span.column}: unreadable: {problem.message}"
+        for problem in run.problems
+    ]
+    for verdict in run.verdicts:
+        lines += _lines(verdict, options)
+    return "".join(f"{printable(line)}\n" for line in lines)
+
+
+def _lines(verdict: Verdict, options: Options) -> Iterator[str]:
+    for finding in verdict.findings:
+        if options.everything or finding.outcome is not Outcome.PASS:
+            place = f"{verdict.spec.file}:{finding.span.line}:{finding.span.column}"
+            said = f"{finding.rule}: {verdict.spec.name}: {finding.message}"
+            yield f"{place}: {_word(finding)}: {said}"
+
+
+def _word(finding: Finding) -> str:
+    return "waived" if finding.waived else finding.outcome.value

@@ -1,0 +1,122 @@
+"""What a rule comes to for one spec: the outcome, and the sentence that says why."""
+
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+
+from reglint import quantity
+from reglint.check import names_of
+from reglint.circuit import Circuit
+from reglint.finding import Finding, Outcome, Share
+from reglint.formula import evaluate
+from reglint.functions import DIMENSIONS
+from reglint.rule import Rule
+from reglint.source import TOP
+from reglint.spec import Spec
+
+#: A margin this little below zero is rounding, not a break.
+_ROUNDING = 1e-12
+
+
+@dataclass(frozen=True, slots=True)
+class WorstPoint:
+    """Where a rule is closest to breaking, or most broken."""
+
+    value: float
+    limit: float
+    margin: float
+    corner: Mapping[str, float]
+    shares: tuple[Share, ...]
+
+
+def outcome(rule: Rule, spec: Spec, margin: float) -> Outcome:
+    """Return what a worst-case margin comes to; one that is not a number never passes."""
+    if margin < -_ROUNDING:
+        return Outcome.WARN if rule.at_worst_warn else Outcome.FAIL
+    if not margin >= rule.warn_margin - _ROUNDING or neglects(rule, spec):
+        return Outcome.WARN
+    return Outcome.PASS
+
+
+def neglects(rule: Rule, spec: Spec) -> tuple[str, ...]:
+    """Return what was left out of account that the rule counts on."""
+    return tuple(spec.neglected[path] for path in rule.counts_on if path in spec.neglected)
+
+
+def bare_pass(rule: Rule) -> Finding:
+    """Return a pass that nobody wants to read."""
+    return Finding(rule.name, Outcome.PASS, "", TOP)
+
+
+def finding(
+    circuit: Circuit, rule: Rule, spec: Spec, result: Outcome, worst: WorstPoint
+) -> Finding:
+    """Return the finding of a rule that was evaluated."""
+    unit = _unit(circuit, rule)
+    checked = not math.isnan(worst.margin)
+    return Finding(
+        rule=rule.name,
+        outcome=result,
+        message=_sentence(rule, worst, unit) if checked else _no_value(rule, worst),
+        span=spec.place(rule.point_at),
+        remedy=rule.remedy if result is not Outcome.PASS else "",
+        condition=rule.condition,
+        value=worst.value if checked else None,
+        limit=worst.limit if checked else None,
+        unit=unit,
+        margin=worst.margin if checked else None,
+        corner=worst.corner,
+        shares=worst.shares,
+        notes=neglects(rule, spec),
+    )
+
+
+def not_checked(
+    circuit: Circuit, rule: Rule, spec: Spec, missing: Sequence[str], uncovered: Sequence[str]
+) -> Finding:
+    """Return the warning of a rule that lacks figures, or that the policy has none for."""
+    if missing:
+        listed = ", ".join(missing)
+        why = f"{listed} {'is' if len(missing) == 1 else 'are'} not stated"
+        place, remedy = missing[0], f"State {listed}."
+    else:
+        why = "; ".join(circuit.not_covered[name] for name in uncovered)
+        place, remedy = rule.point_at, "Choose a derating policy that covers the part, or waive."
+    return Finding(
+        rule=rule.name,
+        outcome=Outcome.WARN,
+        message=f"not checked: {why}",
+        span=spec.place(place),
+        remedy=remedy,
+        condition=rule.condition,
+    )
+
+
+def _sentence(rule: Rule, worst: WorstPoint, unit: str) -> str:
+    demand = "at least" if rule.holds.sign == ">=" else "at most"
+    value, limit = quantity.render(worst.value, unit), quantity.render(worst.limit, unit)
+    what = rule.holds.value.text.strip()
+    return f"{what} is {value} at worst, {demand} {limit} is wanted (margin {percent(worst.margin)})"
+
+
+def _no_value(rule: Rule, worst: WorstPoint) -> str:
+    corner = ", ".join(f"{name} = {value:.6g}" for name, value in worst.corner.items())
+    return f"not checked: {rule.holds.value.text.strip()} has no value at {corner} (SI units)"
+
+
+def percent(fraction: float) -> str:
+    """Return a margin as a signed percentage with three significant digits."""
+    if math.isinf(fraction):
+        return "−∞ %" if fraction < 0 else "∞ %"
+    text = f"{100.0 * fraction:+.3g}" if abs(fraction) < 10 else f"{100.0 * fraction:+.0f}"
+    return f"{text} %".replace("-", "−")
+
+
+def _unit(circuit: Circuit, rule: Rule) -> str:
+    """Return the unit a rule's value is shown in: its quantity's own, or its dimension's."""
+    name = rule.holds.value.text.strip()
+    if name in circuit.quantities:
+        return circuit.quantities[name].unit
+    if name in circuit.kind.fields:
+        return circuit.kind.fields[name].unit
+    return str(evaluate(rule.holds.value.root, names_of(circuit.kind).__getitem__, DIMENSIONS))

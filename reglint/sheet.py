@@ -1,0 +1,115 @@
+"""The calculation sheet: every figure and formula of one spec, with the numbers put in."""
+
+from collections.abc import Iterator, Mapping
+
+import numpy as np
+
+from reglint.box import Box, box_of, numbers_of
+from reglint.circuit import Circuit
+from reglint.extent import extents
+from reglint.finding import Extent
+from reglint.formula import Formula, names_in, with_numbers
+from reglint.kind import Condition, Field, Quantity
+from reglint.quantity import render
+from reglint.spec import Spec
+
+#: Digits enough to follow the calculation with a pocket calculator.
+_DIGITS = 6
+
+
+def sheet(spec: Spec, circuit: Circuit) -> str:
+    """Return the sheet as text: what is stated, then each condition's quantities."""
+    numbers = numbers_of(circuit, [spec])
+    conditions = circuit.kind.conditions
+    boxes = {name: box_of(circuit, each, [spec], numbers) for name, each in conditions.items()}
+    ranges = {(each.condition, each.quantity): each for each in extents(boxes)[0]}
+    lines = [*_heading(spec, circuit), *_stated(spec)]
+    for name, box in boxes.items():
+        lines += _condition(conditions[name], box, ranges)
+    return "\n".join(lines) + "\n"
+
+
+def _heading(spec: Spec, circuit: Circuit) -> Iterator[str]:
+    yield f"Calculation sheet of {spec.name} ({circuit.kind.title}), {spec.file}, line {spec.line}"
+    yield f"Derating: {circuit.policy.title} ({circuit.policy.name})"
+    yield "Under each formula stand the nominal values put in; least and most are over the whole box."
+    yield ""
+
+
+def _stated(spec: Spec) -> Iterator[str]:
+    """Yield every figure, its range and where it comes from."""
+    yield "Figures"
+    said = {each.path: each.says for each in spec.assumptions}
+    for field in spec.kind.fields.values():
+        for path in _paths(spec, field):
+            place = spec.origins.get(path) or (
+                f"line {spec.place(path).line}" if spec.states(path) else "not in the spec"
+            )
+            notes = [field.symbol, place, *([said[path]] if path in said else [])]
+            yield f"  {path} = {_figure(spec, path, field)}  ({'; '.join(filter(None, notes))})"
+    yield ""
+
+
+def _paths(spec: Spec, field: Field) -> Iterator[str]:
+    """Yield the names a field goes by in this spec, where it has a value."""
+    if "*" in field.path:
+        group, _, name = field.path.split(".")
+        stated = (*spec.swept, *spec.numbers)
+        yield from (p for p in stated if p.startswith(f"{group}.") and p.endswith(f".{name}"))
+    elif field.role == "limits":
+        yield from (p for end in ("min", "max") if spec.has(p := f"{field.path}.{end}"))
+    elif spec.has(field.path) or field.path in spec.texts:
+        yield field.path
+
+
+def _figure(spec: Spec, path: str, field: Field) -> str:
+    if path in spec.texts:
+        return spec.texts[path]
+    if path in spec.numbers:
+        return render(spec.numbers[path], field.unit, _DIGITS)
+    terms = spec.swept[path]
+    sums = (sum(t.low for t in terms), sum(t.nominal for t in terms), sum(t.high for t in terms))
+    least, nominal, most = (render(value, field.unit, _DIGITS) for value in sums)
+    return nominal if least == most else f"{nominal}, from {least} to {most}"
+
+
+def _condition(
+    condition: Condition, box: Box, ranges: Mapping[tuple[str, str], Extent]
+) -> Iterator[str]:
+    """Yield the quantities under one condition; those it fixes, and those without value, not."""
+    yield f"Under {condition.name}: {condition.says}"
+    values = box.values(box.nominal[:, None, :])
+
+    def number(name: str) -> str:
+        return render(float(np.asarray(values(name)).flat[0]), _unit(box.circuit, name), _DIGITS)
+
+    for name, quantity in box.circuit.quantities.items():
+        extent = ranges.get((condition.name, name))
+        if extent is not None and name not in condition.fixes:
+            yield from _quantity(quantity, extent, box, number)
+    yield ""
+
+
+def _quantity(quantity: Quantity, extent: Extent, box: Box, number: "_Number") -> Iterator[str]:
+    symbol = f" ({quantity.symbol})" if quantity.symbol else ""
+    yield f"  {quantity.path}{symbol}: {quantity.says}"
+    with np.errstate(all="ignore"):
+        yield from _working(quantity, box, number)
+    least, nominal, most = (
+        render(value, extent.unit, _DIGITS) for value in (extent.min, extent.nom, extent.max)
+    )
+    yield f"      = {nominal}; least {least}, most {most}"
+
+
+def _working(quantity: Quantity, box: Box, number: "_Number") -> Iterator[str]:
+    """Yield the formula and the formula with numbers; an equation shows both sides meet."""
+    if quantity.given:
+        given = ", ".join(f"{name} = {to.text}" for name, to in quantity.given.items())
+        yield f"      with {given}:"
+        yield f"      {_text(quantity.formula)}"
+    elif quantity.formula is not None:
+        yield f"      {_text(quantity.formula)}"
+        yield f"      {with_numbers(quantity.formula, number)}"
+    elif quantity.root is not None:
+        yield f"      where this passes through zero: {quantity.root.falling.text}"
+        yield f"      {with_numbers(quantity.root.falling, number)}"

@@ -1,0 +1,93 @@
+"""A spec: one regulator as typed values, each with the place it was stated at."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from datetime import date
+
+from reglint.document import Mapping as MappingNode
+from reglint.document import find, span_of
+from reglint.kind import Kind
+from reglint.source import Span
+
+
+@dataclass(frozen=True, slots=True)
+class Term:
+    """One addend of a swept value: its range and where it was stated.
+
+    A resistance is the sum of its stated value, its drift with temperature and its
+    ageing; a load current is the sum of the loads.
+    """
+
+    path: str
+    low: float
+    nominal: float
+    high: float
+    #: Whether an operating condition may take it away (a removable load).
+    removable: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class Assumption:
+    """A figure the spec does not state, and what was taken for it."""
+
+    path: str
+    says: str
+
+
+@dataclass(frozen=True, slots=True)
+class Waiver:
+    """A rule's finding accepted for a time."""
+
+    rule: str
+    reason: str
+    approved_by: str
+    until: date
+    #: The margin, as a fraction, below which the waiver stops working.
+    no_worse_than: float | None
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Spec:
+    """One regulator, read and typed; numbers are in SI units, temperatures in °C."""
+
+    file: str
+    root: MappingNode
+    kind: Kind
+    name: str
+    #: The derating policy it is judged under.
+    derating: str
+    #: The derating style of each component that states one.
+    styles: Mapping[str, str]
+    #: Single numbers by their name in formulas.
+    numbers: Mapping[str, float]
+    #: Swept names and the terms they are the sum of.
+    swept: Mapping[str, tuple[Term, ...]]
+    #: Words by their path: names of rails, reference designators, parts.
+    texts: Mapping[str, str]
+    #: Where figures not stated in the spec itself come from, by path.
+    origins: Mapping[str, str]
+    assumptions: tuple[Assumption, ...]
+    #: Fields that were neglected, and what a report must say about it.
+    neglected: Mapping[str, str]
+    waivers: tuple[Waiver, ...]
+
+    @property
+    def line(self) -> int:
+        """Return the line where the spec starts."""
+        return self.root.span.line
+
+    def place(self, path: str) -> Span:
+        """Return where a field is stated; the part that states it, or its surroundings, else."""
+        component = path.split(".")[0]
+        if path in self.origins and f"{component}.part" in self.texts:
+            path = f"{component}.part"
+        return span_of(self.root, path.split("."))
+
+    def states(self, path: str) -> bool:
+        """Tell whether the spec itself states a field."""
+        return find(self.root, path.split(".")) is not None
+
+    def has(self, name: str) -> bool:
+        """Tell whether a name has a value, stated or assumed."""
+        return name in self.numbers or name in self.swept
