@@ -51,6 +51,18 @@ def under(kind: Kind, policy: Policy, styles: Mapping[str, str]) -> Circuit:
     return Circuit(kind, policy, quantities, not_covered)
 
 
+def unit_of(circuit: Circuit, name: str) -> str:
+    """Return the unit a name's value is in."""
+    base = name.rpartition(".")[0]
+    if name.endswith(".tolerance"):
+        return "1"
+    for known in (circuit.quantities, circuit.kind.totals, circuit.kind.fields):
+        for each in (name, base):
+            if each in known:
+                return known[each].unit or "1"
+    return "1"
+
+
 def without_policy(kind: Kind) -> Circuit:
     """Return a kind alone, for checks that concern no policy."""
     return under(kind, Policy("none stated", "", "", "", {}, ""), {})

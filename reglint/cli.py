@@ -4,6 +4,7 @@ Status 0: nothing at or above the gate. 1: findings at or above it. 2: a file co
 read, or the command was misused. With several, the highest.
 """
 
+import json
 import os
 import sys
 from collections.abc import Callable
@@ -14,12 +15,20 @@ from typing import Any, TypeVar
 import click
 
 from reglint import __version__, reports
+from reglint.catalogue import described, listed
 from reglint.errors import UsageError
+from reglint.explain import explain as explain_name
 from reglint.finding import Outcome, Run
 from reglint.judge import Wanted
+from reglint.kind import Kind
+from reglint.nearest import hint
 from reglint.output import write
-from reglint.project import Project
+from reglint.project import Home, Project
 from reglint.reports import Options
+from reglint.schema import KNOWLEDGE, knowledge_schema
+from reglint.sheet import sheet as calculation
+from reglint.spec_schema import editor_schema
+from reglint.starter import starter as commented
 
 F = TypeVar("F", bound=Callable[..., Any])
 
@@ -75,6 +84,95 @@ def check(
     options = Options(everything, out is None and _coloured(colour))
     write(reports.renderer(report)(run, options), out)
     context.exit(_status(run, gate or project.gate()))
+
+
+@cli.command()
+@click.argument("name")
+def explain(name: str) -> None:
+    """Explain a rule, kind, quantity, field or derating policy in words, formula and source."""
+    home = _home()
+    write(explain_name(name, home.rulebook), None)
+
+
+@cli.command()
+@click.argument("spec", type=_PATHS)
+@click.option("--name", help="The spec's name, where the file holds several.")
+@click.option("--derating", metavar="NAME", help="Judge under this policy.")
+@click.option("--out", type=_PATHS, help="Write the sheet to a file instead.")
+@click.pass_context
+def sheet(
+    context: click.Context, spec: Path, name: str | None, derating: str | None, out: Path | None
+) -> None:
+    """Print the calculation of SPEC: formulas, the numbers put in, least, nominal and most."""
+    project = Project(Path.cwd(), derating)
+    cases, problems = project.read(spec)
+    problems += project.problems()
+    for problem in problems:
+        click.echo(f"reglint: {problem}", err=True)
+    chosen = [case for case in cases if name in (None, case.spec.name)]
+    if name and not chosen:
+        known = ", ".join(case.spec.name for case in cases)
+        raise UsageError(f"{spec} has no spec {name} (it has: {known})")
+    write("\n".join(calculation(case.spec, case.circuit) for case in chosen), out)
+    context.exit(2 if problems else 0)
+
+
+@cli.command()
+@click.argument("kind")
+@click.option("--out", type=_PATHS, help="Write the spec to a file instead.")
+def starter(kind: str, out: Path | None) -> None:
+    """Print a commented spec of KIND to fill in."""
+    write(commented(_kind(_home(), kind)), out)
+
+
+@cli.command()
+@click.argument("name", required=False)
+@click.option("--out", type=_PATHS, help="Write the schema to a file instead.")
+def schema(name: str | None, out: Path | None) -> None:
+    """Print the JSON Schema of the specs of a kind, or of all kinds for an editor.
+
+    NAME is a kind, or one of: rule, kind, policy, part, settings.
+    """
+    home = _home()
+    if name is None:
+        kinds = [_kind(home, each) for each in home.rulebook.kind_names()]
+        found = editor_schema(kinds)
+    elif name in KNOWLEDGE:
+        found = knowledge_schema(name)
+    else:
+        found = home.schema(_kind(home, name))
+    write(json.dumps(found, indent=2, ensure_ascii=False) + "\n", out)
+
+
+@cli.command()
+@click.argument("name", required=False)
+def parts(name: str | None) -> None:
+    """List the known parts, or print what is known of the part NAME and from where."""
+    book = _home().rulebook
+    if name is None:
+        write(listed(book.parts().values()), None)
+        return
+    part = book.part(name)
+    if isinstance(part, str):
+        raise UsageError(part)
+    write(described(part), None)
+
+
+def _home() -> Home:
+    """Return the home of the working folder; what is wrong with it is said at once."""
+    project = Project(Path.cwd())
+    home = project.home(Path.cwd() / "any")
+    for problem in home.problems:
+        click.echo(f"reglint: {problem}", err=True)
+    return home
+
+
+def _kind(home: Home, name: str) -> Kind:
+    kind = home.rulebook.kind(name) if name in home.rulebook.kind_names() else None
+    if kind is None:
+        known = home.rulebook.kind_names()
+        raise UsageError(f"there is no kind {name}{hint(name, known)} (known: {', '.join(known)})")
+    return kind
 
 
 def _status(run: Run, gate: str) -> int:

@@ -402,8 +402,9 @@ class _PureParser(yaml.BaseLoader):
 
     def peek(self, index: int = 0) -> str:
         # A ? within a text without quotes would end it in brackets; not so in libyaml.
-        character: str = super().peek(index)
-        return "x" if character == "?" and self.in_plain else character
+        found: str = super().peek(index)
+        inside = found == "?" and self.in_plain and self.buffer[self.pointer + index - 1] != ":"
+        return "x" if inside else found
 
     def scan_plain(self) -> Any:
         self.in_plain = True

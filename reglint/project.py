@@ -88,9 +88,12 @@ class Project:
             cases += read_cases
             problems += found
         verdicts = judge(cases, wanted)
-        for home in self.homes.values():
-            problems += home.problems + home.rulebook.problems
-        return Run(tuple(verdicts), tuple(sorted(set(problems))))
+        return Run(tuple(verdicts), tuple(sorted({*problems, *self.problems()})))
+
+    def problems(self) -> list[Problem]:
+        """Return what is wrong with the settings and knowledge met so far."""
+        homes = self.homes.values()
+        return [each for home in homes for each in (*home.problems, *home.rulebook.problems)]
 
     def read(self, path: Path) -> tuple[list[Case], list[Problem]]:
         """Read the specs of one file."""

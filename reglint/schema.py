@@ -23,6 +23,9 @@ from reglint.source import Complaint
 Schema: TypeAlias = Mapping[str, Any]
 Errors: TypeAlias = Iterator[ValidationError]
 
+#: The files of knowledge that have a schema of their own.
+KNOWLEDGE = ("rule", "kind", "policy", "part", "settings")
+
 #: What each JSON type is called in a message.
 _TYPE_WORDS = {"string": "a text", "object": "a mapping", "array": "a list", "number": "a number"}
 
@@ -107,7 +110,7 @@ _Validator = extend(
 
 @cache
 def knowledge_schema(name: str) -> Schema:
-    """Return the schema of ``rule``, ``kind``, ``policy``, ``part`` or ``settings`` files."""
+    """Return the schema of one of the files of `KNOWLEDGE`."""
     text = resources.files("reglint").joinpath("schemas", f"{name}.json").read_text("utf-8")
     schema: Schema = json.loads(text)
     return schema

@@ -1,17 +1,22 @@
 """The calculation sheet: every figure and formula of one spec, with the numbers put in."""
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping
+
+from typing import TypeAlias
 
 import numpy as np
 
 from reglint.box import Box, box_of, numbers_of
-from reglint.circuit import Circuit
+from reglint.circuit import Circuit, unit_of
 from reglint.extent import extents
 from reglint.finding import Extent
-from reglint.formula import Formula, names_in, with_numbers
+from reglint.formula import with_numbers
 from reglint.kind import Condition, Field, Quantity
 from reglint.quantity import render
 from reglint.spec import Spec
+
+#: Gives a name's number as text.
+_Number: TypeAlias = Callable[[str], str]
 
 #: Digits enough to follow the calculation with a pocket calculator.
 _DIGITS = 6
@@ -73,43 +78,50 @@ def _figure(spec: Spec, path: str, field: Field) -> str:
     return nominal if least == most else f"{nominal}, from {least} to {most}"
 
 
+def _numbers(quantity: Quantity, box: Box) -> _Number:
+    """Return the nominal numbers as a quantity's formula sees them."""
+    scope = box.values(box.nominal[:, None, :])
+    if quantity.given:
+        scope = scope.within({name: scope.of(to) for name, to in quantity.given.items()})
+
+    def number(name: str) -> str:
+        value = float(np.asarray(scope(name)).flat[0])
+        return render(value, unit_of(box.circuit, name), _DIGITS)
+
+    return number
+
+
 def _condition(
     condition: Condition, box: Box, ranges: Mapping[tuple[str, str], Extent]
 ) -> Iterator[str]:
     """Yield the quantities under one condition; those it fixes, and those without value, not."""
     yield f"Under {condition.name}: {condition.says}"
-    values = box.values(box.nominal[:, None, :])
-
-    def number(name: str) -> str:
-        return render(float(np.asarray(values(name)).flat[0]), _unit(box.circuit, name), _DIGITS)
-
     for name, quantity in box.circuit.quantities.items():
         extent = ranges.get((condition.name, name))
         if extent is not None and name not in condition.fixes:
-            yield from _quantity(quantity, extent, box, number)
+            yield from _quantity(quantity, extent, box)
     yield ""
 
 
-def _quantity(quantity: Quantity, extent: Extent, box: Box, number: "_Number") -> Iterator[str]:
+def _quantity(quantity: Quantity, extent: Extent, box: Box) -> Iterator[str]:
     symbol = f" ({quantity.symbol})" if quantity.symbol else ""
     yield f"  {quantity.path}{symbol}: {quantity.says}"
     with np.errstate(all="ignore"):
-        yield from _working(quantity, box, number)
+        yield from _working(quantity, box)
     least, nominal, most = (
         render(value, extent.unit, _DIGITS) for value in (extent.min, extent.nom, extent.max)
     )
     yield f"      = {nominal}; least {least}, most {most}"
 
 
-def _working(quantity: Quantity, box: Box, number: "_Number") -> Iterator[str]:
+def _working(quantity: Quantity, box: Box) -> Iterator[str]:
     """Yield the formula and the formula with numbers; an equation shows both sides meet."""
     if quantity.given:
         given = ", ".join(f"{name} = {to.text}" for name, to in quantity.given.items())
         yield f"      with {given}:"
-        yield f"      {_text(quantity.formula)}"
-    elif quantity.formula is not None:
-        yield f"      {_text(quantity.formula)}"
-        yield f"      {with_numbers(quantity.formula, number)}"
+    if quantity.formula is not None:
+        yield f"      {quantity.formula.text.strip()}"
+        yield f"      {with_numbers(quantity.formula, _numbers(quantity, box))}"
     elif quantity.root is not None:
         yield f"      where this passes through zero: {quantity.root.falling.text}"
-        yield f"      {with_numbers(quantity.root.falling, number)}"
+        yield f"      {with_numbers(quantity.root.falling, _numbers(quantity, box))}"

@@ -35,3 +35,7 @@ class Problem:
     file: str
     span: Span
     message: str
+
+    def __str__(self) -> str:
+        """Return the problem in the form ``file:line:column: message``."""
+        return f"{self.file}:{self.span.line}:{self.span.column}: {self.message}"
