@@ -72,7 +72,9 @@ def box_of(
     """Build the box of specs of one circuit; ``numbers`` come from `numbers_of`."""
     known = circuit.kind.stated_names()
     swept = sorted({name for spec in specs for name in spec.swept if name in known})
-    ends = np.array([[ends_of(spec.swept.get(name), condition) for name in swept] for spec in specs])
+    ends = np.array(
+        [[ends_of(spec.swept.get(name), condition) for name in swept] for spec in specs]
+    )
     low, nominal, high = ends.reshape(len(specs), len(swept), 3).transpose(2, 0, 1)
     varies = (low != high).any(axis=0)
     still = {name: low[:, [i]] for i, name in enumerate(swept) if not varies[i]}
@@ -93,9 +95,7 @@ def numbers_of(circuit: Circuit, specs: Sequence[Spec]) -> dict[str, Array]:
     """Return what a batch does not sweep, each of shape (s, 1); NaN where a spec states none."""
     swept = {name for spec in specs for name in spec.swept}
     names = (circuit.kind.stated_names().keys() | circuit.not_covered.keys()) - swept
-    return {
-        name: np.array([[spec.numbers.get(name, np.nan)] for spec in specs]) for name in names
-    }
+    return {name: np.array([[spec.numbers.get(name, np.nan)] for spec in specs]) for name in names}
 
 
 def ends_of(terms: Sequence[Term] | None, condition: Condition) -> tuple[float, float, float]:

@@ -72,7 +72,9 @@ def _quantity(one: Quantity, names: Names) -> Iterator[Complaint]:
             yield from _formula(end, names, wanted)
 
 
-def _formula(formula: Formula, names: Names, wanted: Dimension | None = None) -> Iterator[Complaint]:
+def _formula(
+    formula: Formula, names: Names, wanted: Dimension | None = None
+) -> Iterator[Complaint]:
     """Yield the unknown names of a formula; where all are known, what its dimensions spoil."""
     unknown = [each for each in names_in(formula.root) if each.name not in names]
     for each in unknown:

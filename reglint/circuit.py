@@ -68,7 +68,7 @@ def without_policy(kind: Kind) -> Circuit:
     return under(kind, Policy("none stated", "", "", "", {}, ""), {})
 
 
-def _allowed(  # noqa: PLR0913 -- the six things an allowance is made of
+def _allowed(
     kind: Kind, component: Component, rows: PartClass, style: str, allowance: Allowance, unit: str
 ) -> Quantity:
     """Return an allowance in the kind's own names, its style's figures put in."""
@@ -92,7 +92,9 @@ def _allowed(  # noqa: PLR0913 -- the six things an allowance is made of
 
 def _direct(quantity: Quantity) -> frozenset[str]:
     """Return the names a quantity's formulas mention."""
-    return frozenset(name.name for formula in _formulas(quantity) for name in names_in(formula.root))
+    return frozenset(
+        name.name for formula in _formulas(quantity) for name in names_in(formula.root)
+    )
 
 
 def _formulas(quantity: Quantity) -> Iterator[Formula]:

@@ -154,7 +154,7 @@ def _read(data: bytes, parser: "_Parser") -> Reading:
     if unclean := list(_unclean(text)):
         return _reading([], unclean)
     text = _DIRECTIVE.sub(lambda found: " " * len(found[0]), text) if "%YAML" in text else text
-    return _Trees(text.replace("\t", " "), parser).read()
+    return _Trees(text.replace("\t", " ") + "\n" * (not text.endswith("\n")), parser).read()
 
 
 def _reading(documents: list[Document], complaints: list[Complaint]) -> Reading:

@@ -37,7 +37,7 @@ class Draft:
 
     def complain(self, path: str, message: str, at: Node | None = None) -> None:
         """Note what is wrong with a field, at its value or where its part is named."""
-        component = path.split(".")[0]
+        component = path.split(".", maxsplit=1)[0]
         if path in self.origins:
             where = f" (from {self.origins[path]}{f', line {at.span.line}' if at else ''})"
             span = span_of(self.root, (component, "part"))
@@ -355,7 +355,9 @@ def _total(draft: Draft) -> None:
         group, _, name = total.of.split(".")
         terms = [t for path, each in draft.swept.items() for t in each if _is(path, group, name)]
         if total.inverse:
-            terms = [replace(t, low=1 / t.high, nominal=1 / t.nominal, high=1 / t.low) for t in terms]
+            terms = [
+                replace(t, low=1 / t.high, nominal=1 / t.nominal, high=1 / t.low) for t in terms
+            ]
         draft.swept[total.path] = tuple(terms)
         fixed = [t for t in terms if not t.removable]
         draft.numbers[f"{total.path}.least"] = sum(t.low for t in fixed)
@@ -384,7 +386,9 @@ def _waiver(draft: Draft, rule: str, span: Span, node: Node) -> Waiver | None:
         until = date.fromisoformat(texts["until"])
         least = None if worst is None else quantity.parse(worst, "1")
     except ValueError:
-        draft.complain(f"{path}.until", f"{texts['until']} is no date; write one such as 2027-06-30")
+        draft.complain(
+            f"{path}.until", f"{texts['until']} is no date; write one such as 2027-06-30"
+        )
     except QuantityError as error:
         draft.complain(f"{path}.no_worse_than", str(error))
     else:

@@ -111,7 +111,9 @@ def _quantity(quantity: Quantity, kind: Kind) -> Iterator[str]:
         yield _said("between", f"{root.start.text}, and {root.end.text}")
         yield _said("off", f"{root.off.text} where it is not positive at the start already")
     reach = without_policy(kind).reach(quantity.path)
-    yield _said("rests on", ", ".join(sorted(name for name in reach if name in kind.stated_names())))
+    yield _said(
+        "rests on", ", ".join(sorted(name for name in reach if name in kind.stated_names()))
+    )
     yield _said("source", kind.source)
 
 

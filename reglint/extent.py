@@ -39,5 +39,3 @@ def _measure(name: str, sign: float) -> Measure:
         return sign * values(name)
 
     return measure
-
-

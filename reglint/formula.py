@@ -234,7 +234,9 @@ def _python_tree(bare: str) -> ast.expr:
         return ast.parse(f"({bare}\n)", mode="eval").body
     except SyntaxError as error:
         offset = max(blanks, min((error.offset or 1) - 2, len(bare)))
-        raise FormulaError("this is not a formula; something is missing or left over", offset) from None
+        raise FormulaError(
+            "this is not a formula; something is missing or left over", offset
+        ) from None
     except (RecursionError, MemoryError):
         raise FormulaError("this formula is nested too deeply", blanks) from None
 

@@ -34,7 +34,7 @@ class Arithmetic(Generic[T]):
 
 
 def _knee(ratio: Array, exponent: Array) -> Array:
-    """Integrate ``u**-exponent`` from 1 to ``ratio``: ``(x**(1-m) - 1)/(1-m)``, ``ln x`` at m = 1."""
+    """Return ``(x**(1-m) - 1)/(1-m)``, the integral of ``u**-m`` from 1; ``ln x`` at m = 1."""
     log, power = np.log(ratio), 1.0 - np.asarray(exponent)
     flat = power == 0.0
     return np.where(flat, log, np.expm1(power * log) / np.where(flat, 1.0, power))

@@ -1,12 +1,13 @@
 """A kind of regulator: its fields, the quantities that follow, its operating conditions."""
 
 from collections.abc import Callable, Iterator, Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass
+from dataclasses import field as dataclass_field
 from typing import TypeVar
 
 from reglint import quantity
 from reglint.dimension import ONE, Dimension
-from reglint.document import Document, Node, Scalar, plain
+from reglint.document import Document, Node, plain
 from reglint.document import Mapping as MappingNode
 from reglint.formula import Formula
 from reglint.statement import Statements
@@ -94,7 +95,7 @@ class Quantity:
     formula: Formula | None
     root: Root | None = None
     #: Names that take another value while this formula is evaluated.
-    given: Mapping[str, Formula] = field(default_factory=dict)
+    given: Mapping[str, Formula] = dataclass_field(default_factory=dict)
     symbol: str = ""
 
 
@@ -106,7 +107,7 @@ class Condition:
     says: str
     #: ``connected``, ``absent`` or ``either``.
     removable_loads: str = "connected"
-    fixes: Mapping[str, Formula] = field(default_factory=dict)
+    fixes: Mapping[str, Formula] = dataclass_field(default_factory=dict)
     #: Every field at its nominal value instead of over its range.
     nominal: bool = False
 

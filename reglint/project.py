@@ -14,14 +14,15 @@ from reglint.errors import UsageError
 from reglint.files import Folder, read_bytes
 from reglint.finding import Run
 from reglint.judge import Case, Wanted, judge
+from reglint.kind import Kind
 from reglint.nearest import hint
 from reglint.rulebook import Rulebook
-from reglint.kind import Kind
 from reglint.schema import Schema, complaints
 from reglint.settings import NAME, Settings, read_settings, root_above
 from reglint.source import TOP, Complaint, Problem
 from reglint.spec import Spec
 from reglint.spec_schema import spec_schema
+
 
 @dataclass(slots=True)
 class Home:
@@ -198,7 +199,7 @@ def _inside(path: Path, home: Home) -> bool:
 
 
 def _listed(folder: Path) -> Iterator[Path]:
-    """Yield the files below a folder: those git knows or would add, or all where there is no git."""
+    """Yield the files below a folder: those git knows or would add; all, outside of git."""
     names = _known_to_git(folder)
     paths = folder.rglob("*") if names is None else (folder / name for name in set(names))
     yield from sorted(path for path in paths if path.is_file())

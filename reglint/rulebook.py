@@ -96,7 +96,9 @@ class Rulebook:
     def parts(self) -> Mapping[str, Part]:
         """Return all parts by name; a repository's own come before the built-in ones."""
         if self._parts is None:
-            own = [part for folder in self._part_folders for part in self._read_parts(folder, "**/")]
+            own = [
+                part for folder in self._part_folders for part in self._read_parts(folder, "**/")
+            ]
             stock = [p for folder in self._folders for p in self._read_parts(folder, "parts/")]
             self._parts = {part.name: part for part in (*reversed(stock), *reversed(own))}
         return self._parts
@@ -114,7 +116,8 @@ class Rulebook:
                 if path.name == "kind.yaml":
                     continue
                 if path.stem in seen:
-                    message = f"a rule {path.stem} exists already in {seen[path.stem]}; rename this one"
+                    first = seen[path.stem]
+                    message = f"a rule {path.stem} exists already in {first}; rename this one"
                     self.problems.append(Problem(folder.show(path), TOP, message))
                     continue
                 rule = self._read(path, folder, "rule", _rule)
@@ -131,7 +134,7 @@ class Rulebook:
         return None
 
     def _read(self, path: Path, folder: Folder, what: _What, build: _Build[T]) -> T | None:
-        """Read one file of knowledge; what is wrong with it becomes problems, and it is not used."""
+        """Read one file of knowledge; one with problems is not used."""
         document = self._document(path, folder, what)
         if document is None:
             return None

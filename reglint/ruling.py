@@ -96,7 +96,9 @@ def _sentence(rule: Rule, worst: WorstPoint, unit: str) -> str:
     demand = "at least" if rule.holds.sign == ">=" else "at most"
     value, limit = quantity.render(worst.value, unit), quantity.render(worst.limit, unit)
     what = rule.holds.value.text.strip()
-    return f"{what} is {value} at worst, {demand} {limit} is wanted (margin {percent(worst.margin)})"
+    return (
+        f"{what} is {value} at worst, {demand} {limit} is wanted (margin {percent(worst.margin)})"
+    )
 
 
 def _no_value(rule: Rule, worst: WorstPoint) -> str:
@@ -108,8 +110,8 @@ def percent(fraction: float) -> str:
     """Return a margin as a signed percentage with three significant digits."""
     if math.isinf(fraction):
         return "−∞ %" if fraction < 0 else "∞ %"
-    text = f"{100.0 * fraction:+.3g}" if abs(fraction) < 10 else f"{100.0 * fraction:+.0f}"
-    return f"{text} %".replace("-", "−")
+    digits = "+.3g" if abs(fraction) < 1.0 else "+.0f"
+    return f"{100.0 * fraction:{digits}} %".replace("-", "−")
 
 
 def _unit(circuit: Circuit, rule: Rule) -> str:

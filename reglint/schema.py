@@ -35,7 +35,9 @@ def _type(_validator: Any, wanted: str | list[str], instance: Any, schema: Schem
     found = {str: "string", dict: "object", list: "array"}[type(instance)]
     if found not in kinds:
         words = " or ".join(_TYPE_WORDS[kind] for kind in kinds)
-        yield ValidationError(f"{_TYPE_WORDS[found]} stands here; {words} is wanted{_example(schema)}")
+        yield ValidationError(
+            f"{_TYPE_WORDS[found]} stands here; {words} is wanted{_example(schema)}"
+        )
     elif instance == "":
         yield ValidationError(f"nothing stands here; a value is wanted{_example(schema)}")
 

@@ -1,7 +1,6 @@
 """The calculation sheet: every figure and formula of one spec, with the numbers put in."""
 
 from collections.abc import Callable, Iterator, Mapping
-
 from typing import TypeAlias
 
 import numpy as np
@@ -37,7 +36,9 @@ def sheet(spec: Spec, circuit: Circuit) -> str:
 def _heading(spec: Spec, circuit: Circuit) -> Iterator[str]:
     yield f"Calculation sheet of {spec.name} ({circuit.kind.title}), {spec.file}, line {spec.line}"
     yield f"Derating: {circuit.policy.title} ({circuit.policy.name})"
-    yield "Under each formula stand the nominal values put in; least and most are over the whole box."
+    yield "Under each formula stand the nominal values; least and most are over the box."
+    yield "knee(x, m) = (x ** (1 - m) - 1) / (1 - m), or log(x) at m = 1; falling(x, a, b) falls from"
+    yield "1 at a to 0 at b; if_positive(x, a, b) is a where x > 0, else b; log is natural."
     yield ""
 
 
@@ -70,6 +71,8 @@ def _paths(spec: Spec, field: Field) -> Iterator[str]:
 def _figure(spec: Spec, path: str, field: Field) -> str:
     if path in spec.texts:
         return spec.texts[path]
+    if field.choices:
+        return field.default
     if path in spec.numbers:
         return render(spec.numbers[path], field.unit, _DIGITS)
     terms = spec.swept[path]
@@ -94,13 +97,21 @@ def _numbers(quantity: Quantity, box: Box) -> _Number:
 def _condition(
     condition: Condition, box: Box, ranges: Mapping[tuple[str, str], Extent]
 ) -> Iterator[str]:
-    """Yield the quantities under one condition; those it fixes, and those without value, not."""
+    """Yield the quantities under one condition, but those that stand above already."""
+    first = next(iter(box.circuit.kind.conditions))
     yield f"Under {condition.name}: {condition.says}"
+    if condition.name != first:
+        yield f"  (Quantities with the same range as under {first} are left out.)"
     for name, quantity in box.circuit.quantities.items():
-        extent = ranges.get((condition.name, name))
-        if extent is not None and name not in condition.fixes:
+        extent, before = ranges.get((condition.name, name)), ranges.get((first, name))
+        repeated = condition.name != first and before and extent and _same(extent, before)
+        if extent is not None and name not in condition.fixes and not repeated:
             yield from _quantity(quantity, extent, box)
     yield ""
+
+
+def _same(one: Extent, other: Extent) -> bool:
+    return (one.min, one.nom, one.max) == (other.min, other.nom, other.max)
 
 
 def _quantity(quantity: Quantity, extent: Extent, box: Box) -> Iterator[str]:

@@ -79,7 +79,7 @@ class Spec:
 
     def place(self, path: str) -> Span:
         """Return where a field is stated; the part that states it, or its surroundings, else."""
-        component = path.split(".")[0]
+        component = path.split(".", maxsplit=1)[0]
         if path in self.origins and f"{component}.part" in self.texts:
             path = f"{component}.part"
         return span_of(self.root, path.split("."))

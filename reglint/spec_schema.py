@@ -167,7 +167,7 @@ def _field(field: Field) -> Schema:
         **examples,
         "type": [*([one["type"]] if isinstance(one["type"], str) else one["type"]), "object"],
         "additionalProperties": False,
-        "properties": {end: one for end in ends},
+        "properties": dict.fromkeys(ends, one),
         **({} if field.role == "limits" else {"required": ["min", "max"]}),
     }
 

@@ -29,7 +29,7 @@ def _top(kind: Kind, key: str, node: Node) -> Iterator[str]:
     if isinstance(node, Scalar):
         yield _line(kind, key, f"{key}: {_text(node)}", "")
     elif isinstance(node, MappingNode):
-        yield f"{key}:"
+        yield f"{key}:  # {says}" if (says := _says(kind, key)) else f"{key}:"
         for name, entry in node.entries.items():
             yield _line(kind, f"{key}.{name}", f"{name}: {_flow(entry.value)}", "  ")
         yield from _others(kind, key, node)
@@ -52,7 +52,7 @@ def _others(kind: Kind, key: str, node: MappingNode) -> Iterator[str]:
     """Yield, as comments, the fields beside those that the sample states."""
     for field in kind.fields.values():
         group, _, name = field.path.partition(".")
-        if group == key and "*" not in name and name not in node.entries:
+        if group == key and name and "*" not in name and name not in node.entries:
             yield f"  # {name}: {_example(field)}  # {_says(kind, field.path)}"
 
 

@@ -1,6 +1,6 @@
 """Formulas as they stand in a knowledge file: read all, collect what is wrong."""
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable
 from dataclasses import dataclass, field, replace
 from typing import TypeVar
 

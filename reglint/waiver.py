@@ -6,6 +6,7 @@ from datetime import date
 
 from reglint.finding import Finding, Outcome
 from reglint.nearest import hint
+from reglint.ruling import percent
 from reglint.spec import Waiver
 
 #: The name under which trouble with a waiver is reported.
@@ -28,7 +29,9 @@ def apply(
         yield replace(each, waived=works and each.outcome is not Outcome.PASS)
     for rule, said in trouble.items():
         message = f"the waiver of {rule} {said}"
-        yield Finding(NAME, Outcome.WARN, message, by_rule[rule].span, "Renew or remove the waiver.")
+        yield Finding(
+            NAME, Outcome.WARN, message, by_rule[rule].span, "Renew or remove the waiver."
+        )
 
 
 def _trouble(
@@ -41,13 +44,14 @@ def _trouble(
         return f"expired on {waiver.until}"
     if finding is None:
         return "matches nothing: the rule passes"
-    if waiver.no_worse_than is None:
+    return _exceeded(finding.margin, waiver.no_worse_than)
+
+
+def _exceeded(margin: float | None, accepted: float | None) -> str | None:
+    if accepted is None:
         return None
-    if finding.margin is None:
-        return "does not hold: the rule could not be checked, so nothing shows how bad it is"
-    if finding.margin < waiver.no_worse_than:
-        return (
-            f"is exceeded: the margin is {finding.margin:.1%}, "
-            f"and it accepts no worse than {waiver.no_worse_than:.1%}"
-        )
+    if margin is None:
+        return "does not hold: the rule was not checked, so nothing shows how bad it is"
+    if margin < accepted:
+        return f"is exceeded: the margin is {percent(margin)}, it accepts {percent(accepted)}"
     return None

@@ -45,7 +45,9 @@ def worst(box: Box, measures: Sequence[Measure]) -> list[Worst]:
     """Return the worst case of each measure over each spec's box."""
     with np.errstate(all="ignore"):  # infinities and NaN are values here: their owner decides
         found = [_joined(parts) for parts in zip(*_by_chunk(box, measures), strict=True)]
-        return [_search(box, measure, start) for measure, start in zip(measures, found, strict=True)]
+        return [
+            _search(box, measure, start) for measure, start in zip(measures, found, strict=True)
+        ]
 
 
 def at(box: Box, measure: Measure, points: Array) -> Array:

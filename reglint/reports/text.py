@@ -6,7 +6,6 @@ from reglint.finding import Finding, Outcome, Run, Verdict
 from reglint.printable import printable
 from reglint.quantity import render as quantity
 from reglint.reports import Options
-from reglint.ruling import percent
 
 #: Colours of the outcome words; the word itself always says the same.
 _COLOURS = {"fail": "31", "warn": "33", "pass": "32", "waived": "36", "unreadable": "35"}
@@ -81,7 +80,9 @@ def _finding(verdict: Verdict, finding: Finding, options: Options) -> Iterator[s
 def _corner(verdict: Verdict, corner: Mapping[str, float]) -> str:
     kind = verdict.spec.kind
     units = {**kind.fields, **kind.totals}
-    return ", ".join(f"{name} {quantity(value, units[name].unit)}" for name, value in corner.items())
+    return ", ".join(
+        f"{name} {quantity(value, units[name].unit)}" for name, value in corner.items()
+    )
 
 
 def _shares(finding: Finding) -> str:
