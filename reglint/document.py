@@ -2,8 +2,8 @@
 
 All scalars are read as text; types are the schema's matter. What YAML does behind the
 reader's back (implicit types, anchors, merge keys, tags, the last of two equal names wins)
-is refused at its place or does not happen. A tab between words counts as one blank.
-Trees grow from the parser's events: composed nodes have forgotten the anchors.
+does not happen or is refused at its place: so trees grow from the parser's events, as
+composed nodes have forgotten the anchors. A tab between words counts as one blank.
 """
 
 import re
@@ -21,8 +21,8 @@ MOST_BYTES = 1 << 20
 MOST_LEVELS = 24
 #: A spec has some 100 names and values; a file may well hold hundreds of specs.
 MOST_NODES = 50_000
-#: Reading goes on behind a syntax error this often; each time costs a pass over the file.
-_MOST_BREAKS = 20
+#: After so many complaints nothing is read behind a syntax error; each costs a pass.
+_ENOUGH = 50
 
 
 @dataclass(frozen=True, slots=True)
@@ -85,7 +85,7 @@ class Reading:
 
 def read(data: bytes) -> Reading:
     """Read a file's bytes; whatever is wrong with them is a complaint, never an exception."""
-    return _read(data, _FASTEST_PARSER)
+    return _read(data, _FASTEST)
 
 
 def plain(node: Node) -> Any:
@@ -100,8 +100,7 @@ def plain(node: Node) -> Any:
 def find(node: Node, path: Iterable[str | int]) -> Node | None:
     """Return the value at a path of names and list positions, if there is one."""
     for step in path:
-        entry = _step(node, step)
-        if entry is None:
+        if (entry := _step(node, step)) is None:
             return None
         node = entry.value
     return node
@@ -114,8 +113,7 @@ def span_of(node: Node, path: Iterable[str | int], *, key: bool = False) -> Span
     """
     span = node.span
     for step in path:
-        entry = _step(node, step)
-        if entry is None:
+        if (entry := _step(node, step)) is None:
             break
         node = entry.value
         span = entry.key.span if key else node.span
@@ -123,26 +121,21 @@ def span_of(node: Node, path: Iterable[str | int], *, key: bool = False) -> Span
 
 
 def _step(node: Node, step: str | int) -> Entry | None:
-    """Return what stands at a name or list position; an item is its own name."""
     if isinstance(node, Mapping):
         return node.entries.get(step) if isinstance(step, str) else None
     if isinstance(node, Sequence) and isinstance(step, int) and 0 <= step < len(node.items):
-        item = node.items[step]
-        return Entry(Scalar("", item.span, plain=True), item)
+        return Entry(Scalar("", node.items[step].span, plain=True), node.items[step])
     return None
 
-
-# ── From bytes to a text whose lines all parsers and editors agree on ─────────────────────
 
 #: Line ends to YAML, but not to every editor: they would shift all lines below.
 _LINE_ENDS = "\v\f\r\x85\u2028\u2029"
 _FOREIGN = re.compile("[\0-\x08\v-\x1f\x7f-\x9f\u2028\u2029\ufeff\ufffe\uffff]")
 _INDENTING_TAB = re.compile(r"^ *(\t)[ \t]*[^ \t\r\n#]", re.MULTILINE)
-_DIRECTIVE = re.compile(r"^%[^\r\n]*", re.MULTILINE)
-_HARMLESS_DIRECTIVE = re.compile(r"%YAML[ \t]+1\.[12][ \t]*(#.*)?")
+_DIRECTIVE = re.compile(r"^%(?!YAML[ \t]+1\.[12][ \t]*(#|$)).*", re.MULTILINE)
 
 
-def _read(data: bytes, parser: "_Parser") -> Reading:
+def _read(data: bytes, parser: Callable[[str], Any]) -> Reading:
     """Read with a given parser; a text that is not clean is not parsed at all."""
     if len(data) > MOST_BYTES:
         size = f"the file has {len(data):,} bytes, more than {MOST_BYTES:,}: split it"
@@ -151,15 +144,12 @@ def _read(data: bytes, parser: "_Parser") -> Reading:
         text = data.decode().removeprefix("\ufeff")
     except UnicodeDecodeError as error:
         return Reading((), (_not_utf8(data, error.start),))
-    if unclean := list(_unclean(text)):
-        return _reading([], unclean)
-    text = _DIRECTIVE.sub(lambda found: " " * len(found[0]), text) if "%YAML" in text else text
-    return _Trees(text.replace("\t", " ") + "\n" * (not text.endswith("\n")), parser).read()
-
-
-def _reading(documents: list[Document], complaints: list[Complaint]) -> Reading:
-    in_order = sorted(complaints, key=lambda one: (one.span, one.message))
-    return Reading(tuple(documents), tuple(in_order))
+    if unclean := tuple(_unclean(text)):
+        return Reading((), unclean)
+    # The directives left are harmless, and as comments they are so to every parser.
+    text = f"\n{text}".replace("\n%", "\n#").replace("\t", " ")[1:]
+    # libyaml takes the end of a last line without line end for a line of its own.
+    return _Trees(text if text.endswith("\n") else f"{text}\n", parser).read()
 
 
 def _not_utf8(data: bytes, start: int) -> Complaint:
@@ -167,11 +157,9 @@ def _not_utf8(data: bytes, start: int) -> Complaint:
     if data.startswith((b"\xff\xfe", b"\xfe\xff")):
         return Complaint(TOP, "the file is in UTF-16: save it as UTF-8")
     before = data[:start].decode().removeprefix("\ufeff")
-    byte = data[start : start + 1]
-    meant = byte.decode("cp1252", "ignore")
-    guess = f" (in Windows-1252 it is {meant})" if meant else ""
-    what = f"byte 0x{byte[0]:02X} at offset {start} is not UTF-8{guess}: save the file as UTF-8"
-    return Complaint(_place(before, len(before)), what)
+    meant = data[start : start + 1].decode("cp1252", "ignore") or "nothing"
+    what = f"byte 0x{data[start]:02X} at offset {start} ({meant} in Windows-1252) is not UTF-8"
+    return Complaint(_place(before, len(before)), f"{what}: save the file as UTF-8")
 
 
 def _unclean(text: str) -> Iterator[Complaint]:
@@ -180,39 +168,34 @@ def _unclean(text: str) -> Iterator[Complaint]:
     for character in sorted(set(_FOREIGN.findall(text))):
         line_end = character in _LINE_ENDS
         what = "a line end to some programs only: use LF" if line_end else "no text: delete it"
-        place = _place(text, text.index(character))
-        yield Complaint(place, f"the character U+{ord(character):04X} is {what}")
+        what = f"the character U+{ord(character):04X} is {what}"
+        yield Complaint(_place(text, text.index(character)), what)
     if "\t" in text and (tab := _INDENTING_TAB.search(text)):
         yield Complaint(_place(text, tab.start(1)), "indent with blanks, not with a tab")
-    for found in _DIRECTIVE.finditer(text) if text[:1] == "%" or "\n%" in text else ():
-        if not _HARMLESS_DIRECTIVE.fullmatch(found[0]):
-            what = f"{_short(found[0])} is not read: only %YAML 1.2 may begin a line with %"
-            yield Complaint(_place(text, found.start()), what)
+    if (text[:1] == "%" or "\n%" in text) and (found := _DIRECTIVE.search(text)):
+        what = f"{_short(found[0])} is not read: only %YAML 1.2 may begin a line with %"
+        yield Complaint(_place(text, found.start()), what)
 
 
 def _place(text: str, index: int, length: int = 1) -> Span:
-    """Return the place of a stretch within one line."""
     line = text.count("\n", 0, index) + 1
     column = index - text.rfind("\n", 0, index)
     return Span(line, column, line, column + length)
 
 
 def _short(text: str, most: int = 48) -> str:
-    text = text.strip()
     return text if len(text) <= most else f"{text[: most - 1]}…"
 
 
-# ── From the text to trees ────────────────────────────────────────────────────────────────
-
 _DOCUMENT = re.compile(r"^---(?=[ \r\n]|\Z)", re.MULTILINE)
-_PROPERTY = re.compile(r"\s*([&!][^\s\[\]{},]*)")
+_PROPERTY = re.compile(r" *([&!][^\s\[\]{},]*)")
 _QUOTE = "put the text in quotes"
 
 
 class _Trees:
     """The trees of one file while they grow."""
 
-    def __init__(self, text: str, parser: "_Parser") -> None:
+    def __init__(self, text: str, parser: Callable[[str], Any]) -> None:
         self.text, self.parser = text, parser
         #: libyaml hides a tag that is a lone ``!``; only files with a ``!`` are searched for it.
         self.bang = "!" in text
@@ -221,72 +204,72 @@ class _Trees:
         self.index = self.nodes = 0
 
     def read(self) -> Reading:
-        start, breaks = 0, 0
-        while start < len(self.text) and self.nodes <= MOST_NODES and breaks < _MOST_BREAKS:
-            start, breaks = self._read_from(start), breaks + 1
+        start = 0
+        while start < len(self.text) and len(self.complaints) < _ENOUGH:
+            start = self._read_from(start)
         if not self.index and not self.complaints:
             self._complain(TOP, "the file is empty: write a first line such as format: 1")
-        return _reading(self.documents, self.complaints)
+        self.complaints.sort(key=lambda one: (one.span, one.message))
+        return Reading(tuple(self.documents), tuple(self.complaints))
 
     def _read_from(self, start: int) -> int:
         """Read up to the end, or to a break; return where the next document begins."""
         # Blanks in place of what was read keep all lines and indices true.
-        rest = re.sub(r"[^\r\n]", " ", self.text[:start]) + self.text[start:]
-        self.next = self.parser(rest).get_event
+        blanks = re.sub(r"[^\r\n]+", lambda found: " " * len(found[0]), self.text[:start])
+        self.next = self.parser(blanks + self.text[start:]).get_event
         try:
             while type(event := self.next()) is not yaml.StreamEndEvent:
                 if type(event) is yaml.DocumentStartEvent:
                     self._document()
         except yaml.MarkedYAMLError as error:
-            stop = max(self._break_off(error), start + 3)
-            if following := _DOCUMENT.search(self.text, stop):
+            following = _DOCUMENT.search(self.text, max(self._break_off(error), start + 3))
+            if following and self.nodes <= MOST_NODES:
                 return following.start()
         return len(self.text)
 
     def _document(self) -> None:
-        """Read one document, unless it is empty; keep it if it is sound."""
         event = self.next()
-        if type(event) is yaml.ScalarEvent and event.start_mark.index == event.end_mark.index:
+        if event.start_mark.index == event.end_mark.index and type(event) is yaml.ScalarEvent:
             return
         self.index += 1
         before = len(self.complaints)
         root = self._node(event, 1)
         self.next()
         if not isinstance(root, Mapping):
-            what = "a list" if isinstance(root, Sequence) else "a single text"
-            self._complain(root.span, f'a document has lines "name: value"; this is {what}')
+            self._complain(root.span, 'a document has lines "name: value", no list or single text')
         elif len(self.complaints) == before:
             self.documents.append(Document(root, self.index))
 
     def _node(self, event: Any, level: int) -> Node:
         """Read the value that an event begins; most are texts, so they come first."""
+        self.nodes += 1
+        if self.nodes > MOST_NODES:
+            raise yaml.MarkedYAMLError(None, None, "node count", event.start_mark)
         if type(event) is not yaml.ScalarEvent:
-            return self._other(event, level)
+            return self._collection(event, level)
         if event.tag or event.anchor or self.bang:
             self._refuse_properties(event)
         style = event.style
         span = self._block_span(event) if style and style in "|>" else _span(event, event)
         return Scalar(event.value, span, not style)
 
-    def _other(self, event: Any, level: int) -> Node:
+    def _collection(self, event: Any, level: int) -> Node:
         if type(event) is yaml.AliasEvent:
-            span = _span(event, event)
-            self._complain(span, f"the alias *{event.anchor} is not read: state the value, or {_QUOTE}")
-            return Scalar("", span, plain=False)
+            alias = Scalar(f"*{event.anchor}", _span(event, event), plain=True)
+            what = f"the alias {_short(alias.text)} is not read: state the value, or {_QUOTE}"
+            self._complain(alias.span, what)
+            return alias
         if event.tag or event.anchor:
             self._refuse_properties(event)
         if level > MOST_LEVELS:
-            raise yaml.MarkedYAMLError(None, None, _TOO_DEEP, event.start_mark)
-        read = self._mapping if type(event) is yaml.MappingStartEvent else self._sequence
-        return read(event, level + 1)
+            raise yaml.MarkedYAMLError(None, None, "nesting depth", event.start_mark)
+        is_mapping = type(event) is yaml.MappingStartEvent
+        return (self._mapping if is_mapping else self._sequence)(event, level + 1)
 
     def _mapping(self, start: Any, level: int) -> Mapping:
         entries: dict[str, Entry] = {}
         while type(event := self.next()) is not yaml.MappingEndEvent:
-            key = self._node(event, level)
-            value = self._node(self.next(), level)
-            self._enter(entries, key, value)
-        self._count(start, 2 * len(entries))
+            self._enter(entries, self._node(event, level), self._node(self.next(), level))
         first = next(iter(entries.values()), None)
         return Mapping(entries, first.key.span if first else _span(start, event))
 
@@ -294,16 +277,9 @@ class _Trees:
         items: list[Node] = []
         while type(event := self.next()) is not yaml.SequenceEndEvent:
             items.append(self._node(event, level))
-        self._count(start, len(items))
         return Sequence(tuple(items), items[0].span if items else _span(start, event))
 
-    def _count(self, event: Any, more: int) -> None:
-        self.nodes += more
-        if self.nodes > MOST_NODES:
-            raise yaml.MarkedYAMLError(None, None, _TOO_MANY, event.start_mark)
-
     def _enter(self, entries: dict[str, Entry], key: Node, value: Node) -> None:
-        """Add a name with its value to those before, or complain about the name."""
         if isinstance(value, Scalar) and value.plain and not value.text:
             value = self._nothing(key)
         if not isinstance(key, Scalar):
@@ -313,30 +289,26 @@ class _Trees:
         elif key.text == "<<" and key.plain:
             self._complain(key.span, "the merge key << is not read: write its lines out")
         elif key.text in entries:
-            line = entries[key.text].key.span.line
-            what = f"{_short(key.text)} is stated twice, first in line {line}: delete one"
-            self._complain(key.span, what)
+            what = f"is stated twice, first in line {entries[key.text].key.span.line}: delete one"
+            self._complain(key.span, f"{_short(key.text)} {what}")
         else:
             entries[key.text] = Entry(key, value)
 
     def _nothing(self, key: Node) -> Scalar:
         """Return the empty value behind a name; the parsers disagree about its place."""
         if isinstance(key, Scalar) and key.plain and ":" in key.text:
-            name, _, rest = _short(key.text).partition(":")
-            advice = f"put a blank after the colon, {name}: {rest}".rstrip()
-            self._complain(key.span, f"{name}:{rest} is a name without a value: {advice}")
+            what = "is a name without a value: put a blank after the colon"
+            self._complain(key.span, f"{_short(key.text)} {what}")
         end = key.span.end_line, key.span.end_column
         return Scalar("", Span(*end, *end), plain=True)
 
     def _block_span(self, event: Any) -> Span:
-        """Return the place of a block text without the blank lines below it."""
-        raw = self.text[event.start_mark.index : event.end_mark.index]
-        shown = raw[: raw.find("\n", len(raw.rstrip(" \r\n"))) % (len(raw) + 1)].rstrip("\r")
-        if "\n" not in shown:
-            shown = re.split(r"[ \r]", shown, maxsplit=1)[0]
-        start, lines = _span(event, event), shown.count("\n")
-        column = len(shown) - shown.rfind("\n") if lines else start.column + len(shown)
-        return Span(start.line, start.column, start.line + lines, column)
+        """Return the place of a block text without the blank lines and comments below it."""
+        raw = self.text[event.start_mark.index : event.end_mark.index].rstrip(" \r\n")
+        shown = raw if "\n" in raw else raw.split(" ")[0]
+        line, column, more = event.start_mark.line, event.start_mark.column, shown.count("\n")
+        end = len(shown) - shown.rfind("\n") + (0 if more else column)
+        return Span(line + 1, column + 1, line + 1 + more, end)
 
     def _refuse_properties(self, event: Any) -> None:
         """Complain about the anchor and the tag in front of a value."""
@@ -357,13 +329,12 @@ class _Trees:
             # Text behind a document without a new start belongs to it: its indentation broke.
             self.documents = [one for one in self.documents if one.index != self.index]
         at, sentence = next(row[1:] for row in _SYNTAX if re.search(row[0], said))
-        # Indices only: of a last line without line end libyaml says that it is one further down.
         stop: int = error.problem_mark.index
         index = error.context_mark.index if error.context_mark else stop
         if at == "here" or (at == "line" and "\n" not in text[index:stop]):
             index = stop
         line = text[text.rfind("\n", 0, index) + 1 :].partition("\n")[0]
-        self._complain(_place(text, index), f"{sentence} (in: {_short(line)})")
+        self._complain(_place(text, index), f"{sentence} (in: {_short(line.strip())})")
         return stop
 
 
@@ -372,31 +343,26 @@ def _span(first: Any, last: Any) -> Span:
     return Span(start.line + 1, start.column + 1, end.line + 1, end.column + 1)
 
 
-# ── What YAML itself refuses, and the parser for where libyaml is missing ─────────────────
-
-_TOO_DEEP = f"this is nested more than {MOST_LEVELS} levels deep: flatten it"
-_TOO_MANY = f"the file has more than {MOST_NODES:,} names and values: split it"
+_NO_BEGINNING = "a text cannot begin with this character: put it in quotes"
 #: What both parsers say; whether the place is here, where the construct began, or there only
 #: if that is on another line; and what we say.
 _SYNTAX = (
-    ("nesting depth|is nested", "here", _TOO_DEEP),
-    (_TOO_MANY, "here", _TOO_MANY),
-    ("mapping values", "here", f'no ": " can stand here: check the indentation and the line above, or {_QUOTE}'),
-    ("sequence entries", "here", 'a list cannot begin here: begin a line with "- "'),
+    ("nesting depth", "here", f"this is nested more than {MOST_LEVELS} levels deep: flatten it"),
+    ("node count", "here", f"the file has more than {MOST_NODES:,} names and values: split it"),
+    ("mapping values", "here", f'no ": " can stand here: check the line above too, or {_QUOTE}'),
     ("find expected ':'", "start", 'this is no "name: value": put a blank after the colon'),
     ("unexpected ':'", "here", "put a blank after the colon"),
     ("expected ',' or", "line", "a comma or the closing bracket is missing"),
     ("node content", "here", "a value is missing before this"),
     ("quoted scalar: found unexpected", "start", "this quote is not closed"),
     ("quoted scalar", "start", r"a \ in double quotes begins an escape: use single quotes"),
-    ("block scalar", "start", "only + or - and a digit may stand behind | and >"),
-    ("any token|an alias|an anchor| tag", "start", "put a text that begins like this in quotes"),
+    ("any token|an alias|an anchor| tag|block scalar", "start", _NO_BEGINNING),
     ("", "here", f"this does not fit the lines above: check the indentation, or {_QUOTE}"),
 )
 
 
 class _PureParser(yaml.BaseLoader):
-    """PyYAML's parser in Python, brought to agree with libyaml."""
+    """PyYAML's parser in Python, brought to agree with libyaml but for oddities in brackets."""
 
     in_plain = False
 
@@ -413,9 +379,9 @@ class _PureParser(yaml.BaseLoader):
         return token
 
     def check_value(self) -> Any:
-        # libyaml refuses {a:[1]}.
-        glued = self.pointer and self.buffer[self.pointer - 1] not in " \r\n'\"[]{},"
-        if self.flow_level and glued and self.peek(1) in ",?[]{}":
+        # libyaml refuses {a:[1]}, but not {"a":[1]}.
+        before = self.buffer[max(self.pointer - 99, 0) : self.pointer].rstrip(" \r\n")
+        if self.flow_level and self.peek(1) in ",?[]{}" and before[-1:] not in "'\"[]{},":
             raise yaml.MarkedYAMLError(None, None, "unexpected ':'", self.get_mark())
         return super().check_value()
 
@@ -430,5 +396,4 @@ class _PureParser(yaml.BaseLoader):
         return token
 
 
-_Parser: TypeAlias = Callable[[str], Any]
-_FASTEST_PARSER: _Parser = yaml.CBaseLoader if yaml.__with_libyaml__ else _PureParser
+_FASTEST = yaml.CBaseLoader if yaml.__with_libyaml__ else _PureParser

@@ -187,7 +187,8 @@ def _read_limits(draft: Draft, one: Field, node: Node) -> None:
         ends = {"min": stated.min, "max": stated.max}
     elif isinstance(node, MappingNode):
         ends = _ends(node, one)
-        quantity.range_of(ends.get("min"), None, ends.get("max"), one.unit, partial=True)
+        if len(ends) > 1:
+            quantity.range_of(ends.get("min"), None, ends.get("max"), one.unit)
     for end, value in ends.items():
         _check_bounds(one, value)
         draft.numbers[f"{one.path}.{end}"] = value

@@ -6,7 +6,7 @@ say (constants, functions, roots) is its `Arithmetic`.
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
-from typing import Any, Generic, TypeAlias, TypeVar
+from typing import Any, Generic, Protocol, TypeAlias, TypeVar
 
 import numpy as np
 import numpy.typing as npt
@@ -21,6 +21,16 @@ T = TypeVar("T")
 Array: TypeAlias = npt.NDArray[np.float64]
 
 
+class Equation(Protocol[T]):
+    """What a kind of number must know of an equation to find its root."""
+
+    def residual(self, trial: T) -> T:
+        """Return what falls through zero at the root."""
+
+    def ends(self) -> tuple[T, T, T]:
+        """Return the start and end of the search, and the value when the unknown is off."""
+
+
 @dataclass(frozen=True, slots=True)
 class Arithmetic(Generic[T]):
     """How one kind of number does what operators cannot say."""
@@ -29,8 +39,8 @@ class Arithmetic(Generic[T]):
     constant: Callable[[float, Dimension], T]
     #: The functions of the formula language by name.
     functions: Mapping[str, Callable[..., T]]
-    #: The root of a falling residual: ``(residual, low, high, below) -> root``.
-    solve: Callable[[Callable[[T], T], T, T, T], T]
+    #: The root of an equation.
+    solve: Callable[[Equation[T]], T]
 
 
 def _knee(ratio: Array, exponent: Array) -> Array:
@@ -71,6 +81,10 @@ def _plain_constant(value: float, _dimension: Dimension) -> Array:
     return np.float64(value)  # type: ignore[return-value]  # a scalar broadcasts like an array
 
 
+def _real_root(equation: Equation[Array]) -> Array:
+    return roots.falling_root(equation.residual, *equation.ends())
+
+
 #: Floats and arrays of them: corners, samples, nominal values.
 REAL: Arithmetic[Array] = Arithmetic(
     constant=_plain_constant,
@@ -86,16 +100,15 @@ REAL: Arithmetic[Array] = Arithmetic(
         "if_positive": _if_positive,
         "off_preferred": _off_preferred,
     },
-    solve=roots.falling_root,
+    solve=_real_root,
 )
 
 
-def _dimension_of_root(
-    residual: Callable[[Dimension], Dimension], low: Dimension, high: Dimension, below: Dimension
-) -> Dimension:
-    """Check both sides of an equation once; its ends must share the unknown's dimension."""
-    residual(low)
-    return dimension.FUNCTIONS["max"](low, high, below)
+def _dimension_of_root(equation: Equation[Dimension]) -> Dimension:
+    """Check the equation once; its ends must share the unknown's dimension."""
+    ends = equation.ends()
+    equation.residual(ends[0])
+    return dimension.FUNCTIONS["max"](*ends)
 
 
 #: Dimensions alone: the check of every formula when its file is read.

@@ -1,6 +1,7 @@
 """The values of a circuit's names at one set of points, with any kind of number."""
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
 from typing import Generic, TypeVar
 
 from reglint.circuit import Circuit
@@ -10,6 +11,7 @@ from reglint.functions import Arithmetic
 from reglint.kind import Quantity, Root
 
 T = TypeVar("T")
+U = TypeVar("U")
 
 
 class Values(Generic[T]):
@@ -62,18 +64,39 @@ class Values(Generic[T]):
         """Return an inner scope where some names have other values."""
         return Values(self._circuit, self._arithmetic, given, self)
 
+    def mapped(self, arithmetic: Arithmetic[U], convert: Callable[[T], U]) -> "Values[U]":
+        """Return the same scope in another kind of number; what was computed is not kept."""
+        given = {name: convert(self._known[name]) for name in self._given}
+        outer = self._outer and self._outer.mapped(arithmetic, convert)
+        return Values(self._circuit, arithmetic, given, outer)
+
     def _compute(self, quantity: Quantity) -> T:
         scope = self
         if quantity.given:
             scope = self.within({name: self.of(to) for name, to in quantity.given.items()})
         if quantity.root is not None:
-            return scope._root(quantity.path, quantity.root)  # noqa: SLF001 -- a Values too
+            return self._arithmetic.solve(Equation(scope, quantity.path, quantity.root))
         assert quantity.formula is not None  # noqa: S101 -- one of the two, by the schema
         return scope.of(quantity.formula)
 
-    def _root(self, unknown: str, root: Root) -> T:
-        def residual(trial: T) -> T:
-            return self.within({unknown: trial}).of(root.falling)
 
-        ends = (self.of(each) for each in (root.start, root.end, root.off))
-        return self._arithmetic.solve(residual, *ends)
+@dataclass(frozen=True, slots=True)
+class Equation(Generic[T]):
+    """A quantity that is the root of an equation, in one scope of values."""
+
+    scope: Values[T]
+    unknown: str
+    root: Root
+
+    def residual(self, trial: T) -> T:
+        """Return what falls through zero at the root, with the unknown at a trial value."""
+        return self.scope.within({self.unknown: trial}).of(self.root.falling)
+
+    def ends(self) -> tuple[T, T, T]:
+        """Return the start and end of the search, and the value when the unknown is off."""
+        scope, root = self.scope, self.root
+        return scope.of(root.start), scope.of(root.end), scope.of(root.off)
+
+    def mapped(self, arithmetic: Arithmetic[U], convert: Callable[[T], U]) -> "Equation[U]":
+        """Return the equation in another kind of number."""
+        return Equation(self.scope.mapped(arithmetic, convert), self.unknown, self.root)
