@@ -2,7 +2,7 @@
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from typing import TypeAlias
+from typing import TypeAlias, TypeVar
 
 import numpy as np
 import numpy.typing as npt
@@ -13,6 +13,7 @@ from reglint.kind import Condition
 from reglint.spec import Spec, Term
 from reglint.values import Values
 
+T = TypeVar("T")
 Array: TypeAlias = npt.NDArray[np.float64]
 
 #: Points evaluated at once: arrays of this size stay in a processor's cache.
@@ -51,15 +52,20 @@ class Box:
     def values(self, points: Array) -> Values[Array]:
         """Return the circuit's values at ``points``, of shape (s, p, n)."""
         swept = {name: points[:, :, index] for index, name in enumerate(self.names)}
-        stated = Values(self.circuit, REAL, {**self.fixed, **swept})
-        if not self.condition.fixes:
-            return stated
-        return stated.within({name: stated.of(to) for name, to in self.condition.fixes.items()})
+        return self.under_condition(Values(self.circuit, REAL, {**self.fixed, **swept}))
+
+    def under_condition(self, values: Values[T]) -> Values[T]:
+        """Return values with what the operating condition fixes, in any kind of number."""
+        fixes = self.condition.fixes
+        return (
+            values.within({name: values.of(to) for name, to in fixes.items()}) if fixes else values
+        )
 
     def corners(self) -> Array:
-        """Return all corners, of shape (s, 2**n, n)."""
-        count = len(self.names)
-        upper = (np.arange(1 << count)[:, None] >> np.arange(count)) & 1 == 1
+        """Return all corners, of shape (s, 2**m, n) for the ``m`` names that move anywhere."""
+        moving = np.flatnonzero((self.low != self.high).any(axis=0))
+        upper = np.zeros((1 << len(moving), len(self.names)), dtype=bool)
+        upper[:, moving] = (np.arange(1 << len(moving))[:, None] >> np.arange(len(moving))) & 1
         return np.where(upper, self.high[:, None, :], self.low[:, None, :])
 
 

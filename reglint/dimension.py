@@ -165,6 +165,7 @@ FUNCTIONS: Mapping[str, Callable[..., Dimension]] = {
         ("knee", _plain, 2),
         ("falling", _falling, 3),
         ("if_positive", _if_positive, 3),
+        ("agreeing", _if_positive, 3),
         ("off_preferred", _off_preferred, 2),
     )
 }

@@ -7,7 +7,8 @@ import numpy as np
 from reglint.box import Box
 from reglint.finding import Extent
 from reglint.values import Values
-from reglint.worstcase import Array, Measure, at, worst
+from reglint.proof import look
+from reglint.worstcase import Array, Measure, at, search
 
 
 def extents(boxes: Mapping[str, Box]) -> list[tuple[Extent, ...]]:
@@ -23,15 +24,16 @@ def extents(boxes: Mapping[str, Box]) -> list[tuple[Extent, ...]]:
 def _under(condition: str, box: Box) -> Iterator[tuple[int, Extent]]:
     names = list(box.circuit.quantities)
     measures = [_measure(name, sign) for name in names for sign in (1.0, -1.0)]
-    found = worst(box, measures)
+    looks = look(box, measures)
+    ends = [search(each.box, measure) for each, measure in zip(looks, measures, strict=True)]
     for index, name in enumerate(names):
         unit = box.circuit.quantities[name].unit
         nominal = at(box, _measure(name, 1.0), box.nominal[:, None, :])[:, 0]
-        low, high = found[2 * index].value, -found[2 * index + 1].value
+        low, high = ends[2 * index].value, -ends[2 * index + 1].value
         for row in range(len(box.specs)):
             if not np.isnan(low[row]):
-                ends = (float(low[row]), float(nominal[row]), float(high[row]))
-                yield row, Extent(name, condition, unit, *ends)
+                range_ = (float(low[row]), float(nominal[row]), float(high[row]))
+                yield row, Extent(name, condition, unit, *range_)
 
 
 def _measure(name: str, sign: float) -> Measure:

@@ -11,12 +11,15 @@ from typing import Any, Generic, Protocol, TypeAlias, TypeVar
 import numpy as np
 import numpy.typing as npt
 
-from reglint import dimension, roots
+from reglint import dimension, gradient, interval, roots
 from reglint.dimension import Dimension
+from reglint.gradient import Gradient
+from reglint.interval import Interval
 from reglint.preferred import off_preferred
 
 #: Any kind of number: it must support ``+ - * / **`` and unary minus.
 T = TypeVar("T")
+U = TypeVar("U")
 
 Array: TypeAlias = npt.NDArray[np.float64]
 
@@ -30,6 +33,9 @@ class Equation(Protocol[T]):
     def ends(self) -> tuple[T, T, T]:
         """Return the start and end of the search, and the value when the unknown is off."""
 
+    def mapped(self, arithmetic: "Arithmetic[U]", convert: Callable[[T], U]) -> "Equation[U]":
+        """Return the equation in another kind of number."""
+
 
 @dataclass(frozen=True, slots=True)
 class Arithmetic(Generic[T]):
@@ -40,7 +46,9 @@ class Arithmetic(Generic[T]):
     #: The functions of the formula language by name.
     functions: Mapping[str, Callable[..., T]]
     #: The root of an equation.
-    solve: Callable[[Equation[T]], T]
+    solve: Callable[["Equation[T]"], T]
+    #: A margin: slack over the magnitude of what it is relative to.
+    margin: Callable[[T, T], T]
 
 
 def _knee(ratio: Array, exponent: Array) -> Array:
@@ -81,6 +89,11 @@ def _plain_constant(value: float, _dimension: Dimension) -> Array:
     return np.float64(value)  # type: ignore[return-value]  # a scalar broadcasts like an array
 
 
+def _margin(slack: Array, scale: Array) -> Array:
+    """Return slack over scale; no slack is a margin of zero, also on a limit of zero."""
+    return np.where(slack == 0.0, 0.0, slack / np.abs(scale))
+
+
 def _real_root(equation: Equation[Array]) -> Array:
     return roots.falling_root(equation.residual, *equation.ends())
 
@@ -98,9 +111,11 @@ REAL: Arithmetic[Array] = Arithmetic(
         "knee": _knee,
         "falling": _falling,
         "if_positive": _if_positive,
+        "agreeing": lambda _test, _other, value: value,
         "off_preferred": _off_preferred,
     },
     solve=_real_root,
+    margin=_margin,
 )
 
 
@@ -116,6 +131,43 @@ DIMENSIONS: Arithmetic[Dimension] = Arithmetic(
     constant=lambda _value, of: of,
     functions=dimension.FUNCTIONS,
     solve=_dimension_of_root,
+    margin=lambda slack, scale: slack / scale,
+)
+
+
+def _interval_root(equation: Equation[Interval]) -> Interval:
+    guess = _real_root(equation.mapped(REAL, lambda number: number.middle))
+    return roots.enclosed_root(equation.residual, guess, *equation.ends())
+
+
+#: Intervals: everything a value could be in a box.
+INTERVALS: Arithmetic[Interval] = Arithmetic(
+    constant=lambda value, _dimension: interval.lift(value),
+    functions={**interval.FUNCTIONS, "off_preferred": interval.thin_only(_off_preferred)},
+    solve=_interval_root,
+    margin=interval.margin,
+)
+
+
+def _gradient_root(equation: Equation[Gradient]) -> Gradient:
+    """Return the enclosed root with the partials of the implicit function: -f_p / f_x."""
+    plain = equation.mapped(INTERVALS, lambda number: number.value)
+    root = _interval_root(plain)
+    still = equation.mapped(GRADIENTS, lambda number: Gradient(number.value))
+    slope = still.residual(gradient.variable(0, 1, root))
+    moved = equation.residual(Gradient(root))
+    return gradient.implicit(root, moved, slope, off=plain.residual(plain.ends()[0]))
+
+
+#: Gradients: what a value could be in a box, and how it changes with each swept name.
+GRADIENTS: Arithmetic[Gradient] = Arithmetic(
+    constant=lambda value, _dimension: gradient.raised(value),
+    functions={
+        **gradient.FUNCTIONS,
+        "off_preferred": gradient.thin_only(INTERVALS.functions["off_preferred"]),
+    },
+    solve=_gradient_root,
+    margin=gradient.margin,
 )
 
 #: The words the formula language knows.

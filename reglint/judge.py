@@ -11,10 +11,11 @@ from reglint.circuit import Circuit
 from reglint.extent import extents
 from reglint.finding import Extent, Finding, Outcome, Verdict
 from reglint.margin import Margin
+from reglint.proof import Look, Proven, look, prove
 from reglint.rule import Rule
 from reglint.shares import shares
 from reglint.spec import Spec
-from reglint.worstcase import Worst, at, worst
+from reglint.worstcase import at
 
 
 @dataclass(frozen=True, slots=True)
@@ -96,10 +97,10 @@ def _findings(
         by_condition[rule.condition].append(rule)
     for condition, group in by_condition.items():
         box = boxes[condition]
-        checkable = [_checkable(box, rule, found) for rule in group]
-        worsts = worst(box, [Margin(rule) for rule in group])
-        for rule, rows, result in zip(group, checkable, worsts, strict=True):
-            for row, finding in _judged(box, rule, rows, result, wanted):
+        looks = look(box, [Margin(rule) for rule in group])
+        for rule, seen in zip(group, looks, strict=True):
+            rows = _checkable(box, rule, found)
+            for row, finding in _judged(seen, rule, rows, wanted):
                 found[row][rule.name] = finding
     return found
 
@@ -129,33 +130,49 @@ def _asked(box: Box, rule: Rule) -> frozenset[str]:
 
 
 def _judged(
-    box: Box, rule: Rule, rows: Sequence[int], result: Worst, wanted: Wanted
+    seen: Look, rule: Rule, rows: Sequence[int], wanted: Wanted
 ) -> Iterator[tuple[int, Finding]]:
-    """Yield the findings of one rule for the specs it could be evaluated for."""
-    margins = {row: float(result.value[row]) for row in rows}
-    outcomes = {row: ruling.outcome(rule, box.specs[row], margins[row]) for row in rows}
-    shown = [row for row in rows if wanted.everything or outcomes[row] is not Outcome.PASS]
-    for row in set(rows).difference(shown):
+    """Yield the findings of one rule for the specs it could be evaluated for.
+
+    Most pass on the first look; only the others are searched for their worst point.
+    """
+    box = seen.box
+    passes = [
+        seen.bound[row] >= rule.warn_margin and not ruling.neglects(rule, box.specs[row])
+        for row in rows
+    ]
+    unclear = [row for row, sure in zip(rows, passes, strict=True) if wanted.everything or not sure]
+    for row in set(rows).difference(unclear):
         yield row, ruling.bare_pass(rule)
-    if not shown:
-        return
-    part, points = box.take(shown), result.point[shown]
+    if unclear:
+        part = box.take(unclear)
+        proven = prove(part, Margin(rule), rule.warn_margin)
+        points = _worst_points(part, rule, proven)
+        yield from zip(
+            unclear,
+            (ruling.finding(rule, *each) for each in zip(part.specs, points, strict=True)),
+            strict=True,
+        )
+
+
+def _worst_points(box: Box, rule: Rule, proven: Proven) -> Iterator[ruling.WorstPoint]:
+    """Yield each spec's worst point with both sides of the rule and the shares there."""
     values, limits = (
-        at(part, lambda v, side=side: v.of(side), points[:, None, :])[:, 0]
+        at(box, lambda scope, side=side: scope.of(side), proven.point[:, None, :])[:, 0]
         for side in (rule.holds.value, rule.holds.limit)
     )
-    eaten = shares(part, Margin(rule), points)
+    eaten = shares(box, Margin(rule), proven.point)
     asked = _asked(box, rule)
-    for index, row in enumerate(shown):
-        worst_point = ruling.WorstPoint(
-            value=float(values[index]),
-            limit=float(limits[index]),
-            margin=margins[row],
+    for row, point in enumerate(proven.point):
+        yield ruling.WorstPoint(
+            value=float(values[row]),
+            limit=float(limits[row]),
+            margin=float(proven.value[row]),
+            bound=float(proven.bound[row]),
             corner={
                 name: float(value)
-                for name, value in zip(box.names, points[index], strict=True)
+                for name, value in zip(box.names, point, strict=True)
                 if name in asked
             },
-            shares=eaten[index],
+            shares=eaten[row],
         )
-        yield row, ruling.finding(box.circuit, rule, box.specs[row], outcomes[row], worst_point)

@@ -1,15 +1,12 @@
 """The margin of a rule: how far its value stays on the safe side of its limit."""
 
 from dataclasses import dataclass
-from typing import TypeAlias
-
-import numpy as np
-import numpy.typing as npt
+from typing import TypeVar
 
 from reglint.rule import Rule
 from reglint.values import Values
 
-Array: TypeAlias = npt.NDArray[np.float64]
+T = TypeVar("T")
 
 
 @dataclass(frozen=True, slots=True)
@@ -21,10 +18,9 @@ class Margin:
 
     rule: Rule
 
-    def __call__(self, values: Values[Array]) -> Array:
-        """Return the margin at the points of ``values``, in their shape."""
+    def __call__(self, values: Values[T]) -> T:
+        """Return the margin at the points of ``values``, in their kind of number."""
         rule = self.rule
-        value, limit = values.of(rule.holds.value), values.of(rule.holds.limit)
-        slack = limit - value if rule.holds.sign == "<=" else value - limit
-        scale = np.abs(limit if rule.relative_to is None else values.of(rule.relative_to))
-        return np.where(slack == 0.0, 0.0, slack / scale)
+        value, limit = rule.holds.value, rule.holds.limit
+        slack = (limit, value) if rule.holds.sign == "<=" else (value, limit)
+        return values.fraction(*slack, rule.relative_to or limit)

@@ -5,7 +5,32 @@ from collections.abc import Mapping
 from functools import cache
 
 #: E24 is a list by tradition: eight of its values differ from the formula.
-_E24 = (10, 11, 12, 13, 15, 16, 18, 20, 22, 24, 27, 30, 33, 36, 39, 43, 47, 51, 56, 62, 68, 75, 82, 91)
+_E24 = (
+    10,
+    11,
+    12,
+    13,
+    15,
+    16,
+    18,
+    20,
+    22,
+    24,
+    27,
+    30,
+    33,
+    36,
+    39,
+    43,
+    47,
+    51,
+    56,
+    62,
+    68,
+    75,
+    82,
+    91,
+)
 #: From E48 on the values follow 10**(n/N) to three digits, but for one.
 _E192 = tuple(920 if n == 185 else round(100.0 * 10.0 ** (n / 192.0)) for n in range(192))
 

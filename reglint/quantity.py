@@ -249,9 +249,7 @@ def _deviation(text: str, nominal: float, wanted: str) -> float:
     return size
 
 
-def range_of(
-    low: float | None, nominal: float | None, high: float | None, wanted: str
-) -> Range:
+def range_of(low: float | None, nominal: float | None, high: float | None, wanted: str) -> Range:
     """Return the range between stated ends; a nominal value not stated is the middle.
 
     Raises `QuantityError` where an end is missing or the three are not in order.
@@ -320,7 +318,9 @@ def unit_pattern(wanted: str) -> str:
     number = r"[-−+]?([0-9]+([.][0-9]*)?|[.][0-9]+)([eE][-−+]?[0-9]+)?"
     of = unit(wanted)
     symbols = "|".join(re.escape(each).replace("/", "[/]") for each in _symbols(of))
-    tolerance = rf"( ?(±|[+][/]-|[+]-) ?{number} ?[^ ]+| [+] ?{number}[^/]*[/] ?[-−] ?{number} ?[^ ]+)?"
+    tolerance = (
+        rf"( ?(±|[+][/]-|[+]-) ?{number} ?[^ ]+| [+] ?{number}[^/]*[/] ?[-−] ?{number} ?[^ ]+)?"
+    )
     optional = "?" if of.dimension == ONE else ""
     code = "|[0-9]*[RKkMGTpnuµμmF][0-9]*" if wanted in _CODE_LETTERS else ""
     return f"^({number} ?({symbols}){optional}{tolerance}{code})$"

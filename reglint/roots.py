@@ -1,4 +1,4 @@
-"""The root of a falling function, for many functions at once."""
+"""The root of a falling function, for many functions at once: as numbers, and enclosed."""
 
 from collections.abc import Callable
 from typing import TypeAlias
@@ -6,8 +6,17 @@ from typing import TypeAlias
 import numpy as np
 import numpy.typing as npt
 
+from reglint.interval import Interval, hull, lift, where
+
 Array: TypeAlias = npt.NDArray[np.float64]
 
+#: How far from a root in the middle of its box an enclosure's ends are tried, as fractions:
+#: close by, which does for a point, and further out for a wide box.
+_CLOSE = np.array([1e-11])
+_FAR = np.array([1e-8, 1e-5, 1e-4, 1e-3, 3e-3, 0.01, 0.02, 0.03, 0.05, 0.07, 0.1, 0.13, 0.17, 0.2]
+                + [0.25, 0.3, 0.35, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 0.99])  # fmt: skip
+#: A residual this small against those at the ends is rounding.
+_SMALL = 1e-14
 #: Enough halvings to bring any bracket of doubles down to neighbouring numbers.
 _MOST_STEPS = 200
 
@@ -43,7 +52,7 @@ def _refine(
 ) -> Array:
     """Shrink the bracket ``[a, b]`` until its ends are neighbours for practical purposes."""
     a, fa, b, fb, fraction = np.broadcast_arrays(high, at_high, low, at_low, 0.5)
-    shortest = 1e-15 * np.abs(a)
+    small = _SMALL * np.minimum(np.abs(at_low), np.abs(at_high))
     for _ in range(_MOST_STEPS):
         trial = a + fraction * (b - a)
         at_trial = np.asarray(residual(trial))
@@ -53,8 +62,8 @@ def _refine(
         a, fa = trial, at_trial
         best = np.where(np.abs(fa) < np.abs(fb), a, b)
         width = np.abs(b - a)
-        tolerance = 2.0 * np.finfo(float).eps * np.abs(best) + 0.5 * shortest
-        done = ~bracketed | (tolerance >= 0.5 * width) | (fa == 0.0) | np.isnan(fa)
+        tolerance = 2.0 * np.finfo(float).eps * np.abs(best)
+        done = ~bracketed | (tolerance >= 0.5 * width) | ~(np.abs(fa) > small)
         if done.all():
             break
         fraction = _next_fraction(a, fa, b, fb, c, fc)
@@ -71,3 +80,50 @@ def _next_fraction(a: Array, fa: Array, b: Array, fb: Array, c: Array, fc: Array
         fc - fb
     )
     return np.where(safe & np.isfinite(interpolated), interpolated, 0.5)
+
+
+def enclosed_root(
+    residual: Callable[[Interval], Interval],
+    guess: Array,
+    low: Interval,
+    high: Interval,
+    below: Interval,
+) -> Interval:
+    """Return an enclosure of the root of every function that ``residual`` encloses.
+
+    Around ``guess`` its ends are the nearest points tried where the residual is surely
+    positive, and surely negative: that the functions fall makes it an enclosure. NaN
+    where some function may still be positive at ``high``.
+    """
+    start, end = low.low, np.maximum(low.low, high.high)
+    guess = np.where(np.isfinite(guess), guess, 0.5 * (start + end))
+    first, last, sure = _around(residual, guess, start, _CLOSE)
+    if not sure.all():
+        first, last, sure = _around(residual, guess, start, _FAR)
+    falls = sure[1] | (residual(high).high <= 0.0)
+    first = np.where(sure[0], first, start)
+    last = np.where(sure[1], last, np.where(falls, end, np.nan))
+    inside = Interval(first, last)
+    at_low = residual(low)
+    undecided = where(at_low.high <= 0.0, below, hull(below, inside))
+    return where(at_low.low > 0.0, inside, undecided)
+
+
+def _around(
+    residual: Callable[[Interval], Interval], guess: Array, start: Array, reaches: Array
+) -> tuple[Array, Array, npt.NDArray[np.bool_]]:
+    """Try points on both sides of a guess, all at once.
+
+    Returns the nearest below where the residual is surely positive, the nearest above
+    where it is surely negative, and for both whether there is one.
+    """
+    shape = np.broadcast_shapes(np.shape(guess), np.shape(start))
+    shrink = (1.0 - reaches).reshape(-1, *(1 for _ in shape))
+    trial = np.stack(
+        (np.maximum(guess * shrink, start), np.broadcast_to(guess / shrink, (len(reaches), *shape)))
+    )
+    at_trial = residual(lift(trial))
+    passes = np.stack((at_trial.low[0] > 0.0, at_trial.high[1] < 0.0))
+    nearest = passes.argmax(axis=1)[:, None]
+    first, last = np.take_along_axis(trial, nearest, axis=1)[:, 0]
+    return first, last, passes.any(axis=1)

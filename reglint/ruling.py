@@ -10,6 +10,7 @@ from reglint.circuit import Circuit
 from reglint.finding import Finding, Outcome, Share
 from reglint.formula import evaluate
 from reglint.functions import DIMENSIONS
+from reglint.kind import Kind
 from reglint.rule import Rule
 from reglint.source import TOP
 from reglint.spec import Spec
@@ -25,17 +26,22 @@ class WorstPoint:
     value: float
     limit: float
     margin: float
+    #: What the margin provably cannot fall below.
+    bound: float
     corner: Mapping[str, float]
     shares: tuple[Share, ...]
 
 
-def outcome(rule: Rule, spec: Spec, margin: float) -> Outcome:
-    """Return what a worst-case margin comes to; one that is not a number never passes."""
+def outcome(rule: Rule, spec: Spec, margin: float, bound: float) -> Outcome:
+    """Return what a worst-case margin comes to: a failure needs a witness, a pass a proof.
+
+    A margin that is not a number never passes.
+    """
     if margin < -_ROUNDING:
         return Outcome.WARN if rule.at_worst_warn else Outcome.FAIL
     if not margin >= rule.warn_margin - _ROUNDING or neglects(rule, spec):
         return Outcome.WARN
-    return Outcome.PASS
+    return Outcome.PASS if bound >= -_ROUNDING else Outcome.WARN
 
 
 def neglects(rule: Rule, spec: Spec) -> tuple[str, ...]:
@@ -48,11 +54,10 @@ def bare_pass(rule: Rule) -> Finding:
     return Finding(rule.name, Outcome.PASS, "", TOP)
 
 
-def finding(
-    circuit: Circuit, rule: Rule, spec: Spec, result: Outcome, worst: WorstPoint
-) -> Finding:
+def finding(rule: Rule, spec: Spec, worst: WorstPoint) -> Finding:
     """Return the finding of a rule that was evaluated."""
-    unit = _unit(circuit, rule)
+    result = outcome(rule, spec, worst.margin, worst.bound)
+    unit = _unit(spec.kind, rule)
     checked = not math.isnan(worst.margin)
     return Finding(
         rule=rule.name,
@@ -65,10 +70,32 @@ def finding(
         limit=worst.limit if checked else None,
         unit=unit,
         margin=worst.margin if checked else None,
+        proven=_proven(worst),
+        bound=_bound(rule, worst),
         corner=worst.corner,
         shares=worst.shares,
-        notes=neglects(rule, spec),
+        notes=(*neglects(rule, spec), *_gap(worst)),
     )
+
+
+def _proven(worst: WorstPoint) -> bool:
+    """Tell whether the verdict is certain: broken by a witness, or held by the bound."""
+    return worst.margin < -_ROUNDING or worst.bound >= -_ROUNDING
+
+
+def _gap(worst: WorstPoint) -> tuple[str, ...]:
+    """Return what is to be said of a worst case that is not proven."""
+    if math.isnan(worst.margin) or _proven(worst):
+        return ()
+    return (f"not proven: the margin is known only to be at least {percent(worst.bound)}",)
+
+
+def _bound(rule: Rule, worst: WorstPoint) -> float | None:
+    """Return what the value provably does not exceed, where the limit scales the margin."""
+    if rule.relative_to is not None or not math.isfinite(worst.bound):
+        return None
+    slack = worst.bound * abs(worst.limit)
+    return worst.limit + (slack if rule.holds.sign == ">=" else -slack)
 
 
 def not_checked(
@@ -114,11 +141,11 @@ def percent(fraction: float) -> str:
     return f"{100.0 * fraction:{digits}} %".replace("-", "−")
 
 
-def _unit(circuit: Circuit, rule: Rule) -> str:
+def _unit(kind: Kind, rule: Rule) -> str:
     """Return the unit a rule's value is shown in: its quantity's own, or its dimension's."""
     name = rule.holds.value.text.strip()
-    if name in circuit.quantities:
-        return circuit.quantities[name].unit
-    if name in circuit.kind.fields:
-        return circuit.kind.fields[name].unit
-    return str(evaluate(rule.holds.value.root, names_of(circuit.kind).__getitem__, DIMENSIONS))
+    if name in kind.quantities:
+        return kind.quantities[name].unit
+    if name in kind.fields:
+        return kind.fields[name].unit
+    return str(evaluate(rule.holds.value.root, names_of(kind).__getitem__, DIMENSIONS))

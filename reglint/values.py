@@ -1,5 +1,6 @@
 """The values of a circuit's names at one set of points, with any kind of number."""
 
+import operator
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from typing import Generic, TypeVar
@@ -59,6 +60,11 @@ class Values(Generic[T]):
     def of(self, formula: Formula) -> T:
         """Return the value of a formula in these names."""
         return evaluate(formula.root, self, self._arithmetic)
+
+    def fraction(self, minuend: Formula, subtrahend: Formula, of: Formula) -> T:
+        """Return the difference of two formulas as a fraction of a third's magnitude."""
+        difference = operator.sub(self.of(minuend), self.of(subtrahend))
+        return self._arithmetic.margin(difference, self.of(of))
 
     def within(self, given: Mapping[str, T]) -> "Values[T]":
         """Return an inner scope where some names have other values."""

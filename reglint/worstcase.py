@@ -1,12 +1,13 @@
-"""The worst case of a measure over a box: its corners, then the inside.
+"""The worst case of a measure over a box: the worst point found, and the proof of how bad it can be.
 
-A corner is not always the worst: a product such as V·(S - V) is largest inside. So the
-worst corner is only where the search starts.
+First the measure's partials over the whole box: where one has a sure sign, the worst lies
+at an end of that name's range. What remains is searched, corners first and then inside
+(a product such as V·(S - V) is largest inside), and then proven (`proof`).
 """
 
-from collections.abc import Callable, Iterator, Sequence
-from dataclasses import dataclass
-from typing import TypeAlias
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass, replace
+from typing import Any, TypeAlias
 
 import numpy as np
 import numpy.typing as npt
@@ -17,7 +18,7 @@ from reglint.values import Values
 Array: TypeAlias = npt.NDArray[np.float64]
 
 #: What is to be as small as possible: a margin, a quantity, or a quantity's negative.
-Measure: TypeAlias = Callable[[Values[Array]], Array]
+Measure: TypeAlias = Callable[[Values[Any]], Any]
 
 #: Where along a line from its better end a screening looks: close by, for a slope that
 #: rises inward at once, and at quarters, for what rises later.
@@ -27,8 +28,8 @@ _GRID = np.linspace(0.0, 1.0, 9)
 _ZOOMS = 13
 #: Rounds over all lines before a climb ends.
 _ROUNDS = 8
-#: A gain smaller than this, relative to the measure, is rounding.
-_GAIN = 1e-12
+#: A smaller gain than this is rounding: in a margin, or relative to a quantity.
+_GAIN = 1e-10
 
 
 @dataclass(frozen=True, slots=True)
@@ -41,50 +42,48 @@ class Worst:
     point: Array
 
 
-def worst(box: Box, measures: Sequence[Measure]) -> list[Worst]:
-    """Return the worst case of each measure over each spec's box."""
-    with np.errstate(all="ignore"):  # infinities and NaN are values here: their owner decides
-        found = [_joined(parts) for parts in zip(*_by_chunk(box, measures), strict=True)]
-        return [
-            _search(box, measure, start) for measure, start in zip(measures, found, strict=True)
-        ]
-
-
 def at(box: Box, measure: Measure, points: Array) -> Array:
     """Return a measure at points of shape (s, p, n), as shape (s, p)."""
-    with np.errstate(all="ignore"):
+    with np.errstate(all="ignore"):  # infinities and NaN are values here: their owner decides
         return np.broadcast_to(measure(box.values(points)), points.shape[:2])
 
 
-def _by_chunk(box: Box, measures: Sequence[Measure]) -> Iterator[list[Worst]]:
-    """Yield the worst corners of the measures for as many specs as fit at once."""
-    rows = max(1, POINTS_AT_ONCE >> len(box.names))
-    for start in range(0, len(box.specs), rows):
-        part = box.take(np.arange(start, min(start + rows, len(box.specs))))
-        corners = part.corners()
-        values = part.values(corners)
-        yield [_least(corners, measure(values)) for measure in measures]
+def narrowed(box: Box, partials: tuple[Array, Array]) -> Box:
+    """Return the box with every name fixed at the end where a sure sign puts the least.
+
+    ``partials`` are the least and greatest partials over the box, of shape (s, n).
+    """
+    rises, falls = partials[0] >= 0.0, partials[1] <= 0.0
+    high = np.where(rises, box.low, box.high)
+    low = np.where(falls & ~rises, box.high, box.low)
+    return replace(box, low=low, high=high)
 
 
-def _least(points: Array, measured: Array) -> Worst:
-    """Return the least of the measured points of each row; NaN wins, so that it is seen."""
-    measured = np.broadcast_to(measured, points.shape[:2])
-    index = measured.argmin(axis=1)
-    rows = np.arange(len(points))
-    return Worst(measured[rows, index], points[rows, index])
+def search(box: Box, measure: Measure) -> Worst:
+    """Return the worst point found of a narrowed box, for each of its specs."""
+    value = np.empty(len(box.specs))
+    point = box.low.copy()
+    free = (box.low != box.high).any(axis=1)
+    for rows, find in ((~free, _only_point), (free, _searched)):
+        for some in _slices(np.flatnonzero(rows), _rows_at_once(box, rows)):
+            found = find(box.take(some), measure)
+            value[some], point[some] = found.value, found.point
+    return Worst(value, point)
 
 
-def _joined(parts: Sequence[Worst]) -> Worst:
-    return Worst(
-        np.concatenate([part.value for part in parts]),
-        np.concatenate([part.point for part in parts]),
-    )
+def _rows_at_once(box: Box, rows: npt.NDArray[np.bool_]) -> int:
+    moving = (box.low[rows] != box.high[rows]).any(axis=0).sum()
+    return max(1, POINTS_AT_ONCE >> int(moving))
 
 
-def _search(box: Box, measure: Measure, start: Worst) -> Worst:
-    """Look inside from the worst corners; climb on where anything better shows."""
-    if not box.names:
-        return start
+def _only_point(box: Box, measure: Measure) -> Worst:
+    return Worst(at(box, measure, box.low[:, None, :])[:, 0], box.low)
+
+
+def _searched(box: Box, measure: Measure) -> Worst:
+    """Look at the corners, then inside from the worst of them; climb where it gets worse."""
+    corners = box.corners()
+    start = _least(corners, at(box, measure, corners))
     seen = _screened(box, measure, start)
     better = np.flatnonzero(_improves(seen.value, start.value) | np.isnan(seen.value))
     value, point = start.value.copy(), start.point.copy()
@@ -94,26 +93,34 @@ def _search(box: Box, measure: Measure, start: Worst) -> Worst:
     return Worst(value, point)
 
 
+def _least(points: Array, measured: Array) -> Worst:
+    """Return the least of the measured points of each row; NaN wins, so that it is seen."""
+    index = measured.argmin(axis=1)
+    rows = np.arange(len(points))
+    return Worst(measured[rows, index], points[rows, index])
+
+
 def _slices(rows: npt.NDArray[np.intp], size: int) -> Iterator[npt.NDArray[np.intp]]:
     for start in range(0, len(rows), size):
         yield rows[start : start + size]
 
 
 def _improves(new: Array, old: Array) -> npt.NDArray[np.bool_]:
-    return new < old - _GAIN * np.abs(old)
+    return new < old - _GAIN * np.minimum(np.abs(old), 1.0)
+
+
+def _moving(box: Box) -> npt.NDArray[np.intp]:
+    """Return the columns that move in any of the specs."""
+    return np.flatnonzero((box.low != box.high).any(axis=0))
 
 
 def _screened(box: Box, measure: Measure, start: Worst) -> Worst:
     """Look at a few points along every line through the worst corners."""
-    count = len(box.names)
-    ends = box.low + box.high - start.point
-    parts = []
-    for rows in _slices(np.arange(len(box.specs)), POINTS_AT_ONCE // (count * len(_SCREEN)) or 1):
-        here = start.point[rows][:, None, None, :]
-        step = (ends - start.point)[rows][:, None, None, :] * np.eye(count)[None, :, None, :]
-        points = (here + step * _SCREEN[None, None, :, None]).reshape(len(rows), -1, count)
-        parts.append(_least(points, measure(box.take(rows).values(points))))
-    return _joined(parts)
+    step = box.low + box.high - 2.0 * start.point
+    lines = np.eye(len(box.names))[_moving(box)]
+    moves = (lines[:, None, :] * _SCREEN[None, :, None]).reshape(-1, len(box.names))
+    points = start.point[:, None, :] + step[:, None, :] * moves[None, :, :]
+    return _least(points, at(box, measure, points))
 
 
 def _climb(box: Box, measure: Measure, start: Worst) -> Worst:
@@ -121,28 +128,31 @@ def _climb(box: Box, measure: Measure, start: Worst) -> Worst:
     best = start
     for _ in range(_ROUNDS):
         before = best.value
-        for index in range(len(box.names)):
-            best = _along(box, measure, best, index)
+        for column in _moving(box):
+            best = _along(box, measure, best, column)
         if not _improves(best.value, before).any():
             break
     return best
 
 
-def _along(box: Box, measure: Measure, start: Worst, index: int) -> Worst:
+def _along(box: Box, measure: Measure, start: Worst, column: int) -> Worst:
     """Zoom in on the least value along one name's range."""
-    low, high = box.low[:, index], box.high[:, index]
+    low, high = box.low[:, column], box.high[:, column]
     best = start
     for _ in range(_ZOOMS):
         points = np.repeat(best.point[:, None, :], len(_GRID), axis=1)
-        points[:, :, index] = low[:, None] + (high - low)[:, None] * _GRID
-        found = _least(points, measure(box.values(points)))
-        better = found.value < best.value
-        best = Worst(
-            np.where(better, found.value, best.value),
-            np.where(better[:, None], found.point, best.point),
-        )
+        points[:, :, column] = low[:, None] + (high - low)[:, None] * _GRID
+        found = _least(points, at(box, measure, points))
+        best = better_of(best, found)
         cell = (high - low) / (len(_GRID) - 1)
-        middle = best.point[:, index]
-        low = np.maximum(low, middle - cell)
-        high = np.minimum(high, middle + cell)
+        middle = best.point[:, column]
+        low, high = np.maximum(low, middle - cell), np.minimum(high, middle + cell)
     return best
+
+
+def better_of(one: Worst, other: Worst) -> Worst:
+    """Return the lesser of two findings for each spec."""
+    less = other.value < one.value
+    return Worst(
+        np.where(less, other.value, one.value), np.where(less[:, None], other.point, one.point)
+    )

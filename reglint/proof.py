@@ -1,0 +1,206 @@
+"""The proof of a worst case: what a measure cannot fall below anywhere in a box.
+
+Branch and bound with interval gradients: a box whose measure surely stays above the
+target is done; in the others names with a sure direction are fixed at an end, and what
+is left is halved, until the bound meets the worst point found or the budget ends.
+"""
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, replace
+from typing import TypeAlias
+
+import numpy as np
+import numpy.typing as npt
+
+from reglint.box import Box
+from reglint.functions import GRADIENTS, INTERVALS
+from reglint.gradient import Gradient, variable
+from reglint.interval import Interval, lift
+from reglint.values import Values
+from reglint.worstcase import Measure, Worst, at, better_of, narrowed, search
+
+Array: TypeAlias = npt.NDArray[np.float64]
+
+#: How far the bound may stay below the worst point: a fraction of the limit, for margins.
+TOLERANCE = 1e-3
+#: Rounds of halving in which that is tried; then a bound that decides is good enough.
+_FINE_ROUNDS = 5
+#: Rounds, and pieces of one spec's box, before the proof is given up.
+_MOST_ROUNDS = 30
+_MOST_PIECES = 400
+#: Boxes whose gradients are evaluated at once.
+_AT_ONCE = 1 << 12
+
+
+#: Least and greatest partials, each of shape (s, n).
+Partials: TypeAlias = tuple[Array, Array]
+
+
+@dataclass(frozen=True, slots=True)
+class Look:
+    """A first look at one measure over each spec's whole box."""
+
+    #: The box, narrowed where the measure has a sure direction.
+    box: Box
+    #: What the measure cannot fall below, shape (s,).
+    bound: Array
+
+
+@dataclass(frozen=True, slots=True)
+class Proven:
+    """The worst point found of one measure for each of ``s`` specs, with its bound."""
+
+    #: Shape (s,); NaN where the measure has no value somewhere.
+    value: Array
+    #: Shape (s, n), in the box's names.
+    point: Array
+    #: What the measure cannot fall below, shape (s,); minus infinity where nothing is known.
+    bound: Array
+
+
+def look(box: Box, measures: Sequence[Measure]) -> list[Look]:
+    """Take a first look at each measure over each spec's whole box: its bound, its directions."""
+    parts = []
+    with np.errstate(all="ignore"):
+        for start in range(0, len(box.specs), _AT_ONCE):
+            part = box.take(np.arange(start, min(start + _AT_ONCE, len(box.specs))))
+            parts.append(list(_lower_bounds(part, measures)))
+    return [_look(box, each) for each in zip(*parts, strict=True)]
+
+
+def _look(box: Box, parts: Sequence[tuple[Array, Partials]]) -> Look:
+    bound = np.concatenate([bound for bound, _ in parts])
+    low = np.concatenate([partials[0] for _, partials in parts])
+    high = np.concatenate([partials[1] for _, partials in parts])
+    return Look(narrowed(box, (low, high)), bound)
+
+
+def prove(box: Box, measure: Measure, enough: float) -> Proven:
+    """Return the worst case of a measure over each spec's narrowed box, searched and proven.
+
+    ``enough`` is the value that a proof need not go beyond.
+    """
+    with np.errstate(all="ignore"):
+        return _proven(box, measure, enough)
+
+
+def _gradients(box: Box) -> Values[Gradient]:
+    count = len(box.names)
+    swept = {
+        name: variable(column, count, Interval(box.low[:, column], box.high[:, column]))
+        for column, name in enumerate(box.names)
+    }
+    fixed = {name: Gradient(lift(value[:, 0])) for name, value in box.fixed.items()}
+    return box.under_condition(Values(box.circuit, GRADIENTS, {**fixed, **swept}))
+
+
+def _partials(measured: Gradient, box: Box) -> Partials:
+    """Return the ends of the partials in shape (s, n); zero for what depends on nothing."""
+    if measured.partials is None:
+        return np.zeros_like(box.low), np.zeros_like(box.low)
+    shape = (len(box.names), len(box.specs))
+    ends = (measured.partials.low, measured.partials.high)
+    low, high = (np.broadcast_to(end, shape).T for end in ends)
+    return low, high
+
+
+def _proven(box: Box, measure: Measure, enough: float) -> Proven:
+    found = search(box, measure)
+    bound = np.full(len(box.specs), np.inf)
+    ranges = box.high - box.low
+    pieces, owner = box, np.arange(len(box.specs))
+    for turn in range(_MOST_ROUNDS):
+        ((least, partials),) = _lower_bounds(pieces, [measure])
+        points = (pieces.low == pieces.high).all(axis=1)
+        found = _with_points(found, pieces, owner, measure, points & (least < found.value[owner]))
+        target = _target(found.value, enough if turn >= _FINE_ROUNDS else np.inf)
+        settled = points | (least >= target[owner]) | _crowded(owner, len(bound))
+        np.minimum.at(bound, owner[settled], least[settled])
+        rows = np.flatnonzero(~settled)
+        if not len(rows):
+            break
+        pieces = narrowed(pieces.take(rows), (partials[0][rows], partials[1][rows]))
+        steepness = np.maximum(-partials[0][rows], partials[1][rows])
+        pieces, owner = _halved(pieces, owner[rows], steepness, ranges)
+    else:
+        np.minimum.at(bound, owner, -np.inf)
+    return Proven(found.value, found.point, np.minimum(bound, found.value))
+
+
+def _target(value: Array, enough: float) -> Array:
+    """Return where a bound is good enough: near the worst found, and on its side of zero.
+
+    With ``enough`` finite, also where it decides: what is broken needs no bound at all.
+    """
+    near = np.where((value >= 0.0) & (value < TOLERANCE), 0.0, value - TOLERANCE)
+    if enough == np.inf:
+        return near
+    decides = np.where(value >= enough, enough, 0.0)
+    return np.where(value < 0.0, -np.inf, np.minimum(near, decides))
+
+
+def _lower_bounds(box: Box, measures: Sequence[Measure]) -> Iterator[tuple[Array, Partials]]:
+    """Yield what each measure cannot fall below in each box, and its partials there.
+
+    The bound is the better of two: the measure's own enclosure, and the mean value form
+    around the middle.
+    """
+    values, middle = _gradients(box), Interval(box.low, box.high).middle
+    at_middle = _intervals_at(box, middle)
+    for measure in measures:
+        measured = measure(values)
+        partials = _partials(measured, box)
+        reach = Interval(*partials) * (Interval(box.low, box.high) - middle)
+        fall = lift(0.0)
+        for column in range(len(box.names)):
+            fall = fall + Interval(reach.low[:, column], reach.high[:, column])
+        least = np.fmax(measured.value.low, (lift(measure(at_middle)) + fall).low)
+        yield np.nan_to_num(np.broadcast_to(least, len(box.specs)), nan=-np.inf), partials
+
+
+def _intervals_at(box: Box, points: Array) -> Values[Interval]:
+    """Return the values at one point of each box, every rounding enclosed."""
+    swept = {name: lift(points[:, column]) for column, name in enumerate(box.names)}
+    fixed = {name: lift(value[:, 0]) for name, value in box.fixed.items()}
+    return box.under_condition(Values(box.circuit, INTERVALS, {**fixed, **swept}))
+
+
+def _with_points(
+    found: Worst, pieces: Box, owner: npt.NDArray[np.intp], measure: Measure, rows: Array
+) -> Worst:
+    """Return the worst points found, with those that the proof came upon."""
+    for row in np.flatnonzero(rows):
+        piece = pieces.take([row])
+        value = found.value.copy()
+        point = found.point.copy()
+        measured = at(piece, measure, piece.low[:, None, :])[0, 0]
+        if measured < value[owner[row]]:
+            value[owner[row]], point[owner[row]] = measured, piece.low[0]
+            found = Worst(value, point)
+    return found
+
+
+def _crowded(owner: npt.NDArray[np.intp], count: int) -> npt.NDArray[np.bool_]:
+    """Tell which pieces belong to a spec that has too many of them: its proof is given up."""
+    return (np.bincount(owner, minlength=count) > _MOST_PIECES)[owner]
+
+
+def _halved(
+    pieces: Box, owner: npt.NDArray[np.intp], steepness: Array, ranges: Array
+) -> tuple[Box, npt.NDArray[np.intp]]:
+    """Return every piece in two halves, along the name that matters most; points stay whole."""
+    width = pieces.high - pieces.low
+    relative = np.divide(width, ranges[owner], out=np.zeros_like(width), where=width > 0.0)
+    matters = np.where(width > 0.0, np.minimum(steepness, 1e300) * width, 0.0)
+    column = np.where(matters >= 1e290, 1e300 * relative, matters).argmax(axis=1)
+    column = np.where(matters.max(axis=1) > 0.0, column, relative.argmax(axis=1))
+    rows = np.arange(len(owner))
+    middle = 0.5 * (pieces.low + pieces.high)[rows, column]
+    upper = np.flatnonzero((width > 0.0).any(axis=1))
+    lower_high, upper_low = pieces.high.copy(), pieces.low[upper]
+    lower_high[upper, column[upper]] = middle[upper]
+    upper_low[np.arange(len(upper)), column[upper]] = middle[upper]
+    both = pieces.take(np.concatenate((rows, upper)))
+    low = np.concatenate((pieces.low, upper_low))
+    high = np.concatenate((lower_high, pieces.high[upper]))
+    return replace(both, low=low, high=high), np.concatenate((owner, owner[upper]))
