@@ -55,11 +55,10 @@ class Box:
         return self.under_condition(Values(self.circuit, REAL, {**self.fixed, **swept}))
 
     def under_condition(self, values: Values[T]) -> Values[T]:
-        """Return values with what the operating condition fixes, in any kind of number."""
-        fixes = self.condition.fixes
-        return (
-            values.within({name: values.of(to) for name, to in fixes.items()}) if fixes else values
-        )
+        """Return values with what the operating condition fixes, each in sight of those before."""
+        for name, formula in self.condition.fixes.items():
+            values = values.within({name: values.of(formula)})
+        return values
 
     def corners(self) -> Array:
         """Return all corners, of shape (s, 2**m, n) for the ``m`` names that move anywhere."""

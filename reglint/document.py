@@ -144,8 +144,8 @@ def _read(data: bytes, parser: Callable[[str], Any]) -> Reading:
         text = data.decode().removeprefix("\ufeff")
     except UnicodeDecodeError as error:
         return Reading((), (_not_utf8(data, error.start),))
-    if unclean := tuple(_unclean(text)):
-        return Reading((), unclean)
+    if unclean := sorted(_unclean(text), key=lambda one: one.span):
+        return Reading((), tuple(unclean))
     # The directives left are harmless, and as comments they are so to every parser.
     text = f"\n{text}".replace("\n%", "\n#").replace("\t", " ")[1:]
     # libyaml takes the end of a last line without line end for a line of its own.

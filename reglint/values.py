@@ -48,7 +48,7 @@ class Values(Generic[T]):
         """
         if name in self._known:
             return self._known[name]
-        if self._outer and self._given.isdisjoint(self._circuit.reach(name)):
+        if self._outer and self._is_outer(name):
             return self._outer(name)
         if name in self._pending:
             raise FormulaError(f"{name} is defined in terms of itself")
@@ -56,6 +56,15 @@ class Values(Generic[T]):
         value = self._known[name] = self._compute(self._circuit.quantities[name])
         self._pending.discard(name)
         return value
+
+    def _is_outer(self, name: str) -> bool:
+        """Tell whether the outer scope's value holds here: given there, or untouched here."""
+        assert self._outer is not None  # noqa: S101 -- the caller's question
+        return self._outer.gives(name) or self._given.isdisjoint(self._circuit.reach(name))
+
+    def gives(self, name: str) -> bool:
+        """Tell whether a name's value was given, here or further out, and not computed."""
+        return name in self._given or (self._outer is not None and self._outer.gives(name))
 
     def of(self, formula: Formula) -> T:
         """Return the value of a formula in these names."""

@@ -113,8 +113,8 @@ REFUSED: list[tuple[str, str | bytes, list[str]]] = [
         "first of each",
         "a: \f\n\f\x01\n\x01",
         [
-            "2:2 the character U+0001 is no text: delete it",
             f"1:4 the character U+000C {LINE_END}",
+            "2:2 the character U+0001 is no text: delete it",
         ],
     ),
     ("tab", "a:\n  b: 1\n \tc: 2\n\td: 3\n", ["3:2 indent with blanks, not with a tab"]),

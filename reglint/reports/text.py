@@ -67,6 +67,8 @@ def _finding(verdict: Verdict, finding: Finding, options: Options) -> Iterator[s
     yield f"    {finding.message}"
     for note in finding.notes:
         yield f"    note       {note}"
+    if rule := verdict.rules.get(finding.rule):
+        yield f"    reason     {rule.reason}"
     if finding.corner:
         yield f"    worst at   {_corner(verdict, finding.corner)}"
     if finding.shares:
