@@ -2,8 +2,8 @@
 
 from collections.abc import Iterable
 
-from reglint.document import plain
 from reglint.part import Part
+from reglint.tree import plain
 
 
 def listed(parts: Iterable[Part]) -> str:

@@ -97,7 +97,7 @@ def _loops(circuit: Circuit, names: Names) -> Iterator[Complaint]:
         try:
             Values(circuit, DIMENSIONS, given)(one.path)
         except FormulaError as error:
-            formula = one.formula or (one.root and one.root.falling)
+            formula = one.root.falling if one.root else one.formula
             if formula is not None:
                 yield formula.complaint(error)
 

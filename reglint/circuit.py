@@ -41,7 +41,7 @@ def under(kind: Kind, policy: Policy, styles: Mapping[str, str]) -> Circuit:
         style = styles.get(component.name, "")
         for name, unit in component.allowances.items():
             path = f"{component.name}.{name}"
-            allowance = rows and rows.allowances.get(name)
+            allowance = rows.allowances.get(name) if rows else None
             if rows is None or allowance is None:
                 not_covered[path] = f"{policy.name} has no figure for it"
             elif reason := allowance.not_covered.get(rows.style(style)):

@@ -36,7 +36,7 @@ _PATHS = click.Path(path_type=Path)
 _GATES = ("fail", "warn", "never")
 
 
-class _Today(click.ParamType):
+class _Today(click.ParamType):  # type: ignore[type-arg]  # its parameter is new in click 8.2
     name = "date"
 
     def convert(self, value: Any, param: Any, ctx: Any) -> date:

@@ -7,72 +7,22 @@ composed nodes have forgotten the anchors. A tab between words counts as one bla
 """
 
 import re
-from collections.abc import Callable, Iterable, Iterator
+from collections.abc import Callable
 from dataclasses import dataclass
-from typing import Any, TypeAlias
+from typing import Any
 
 import yaml
 
+from reglint.plaintext import clean_text, place, short
 from reglint.source import TOP, Complaint, Span
+from reglint.tree import Document, Entry, Mapping, Node, Scalar, Sequence
 
-#: A spec has some 1,500 bytes; the worst file of this size takes 4 s to refuse (measured).
-MOST_BYTES = 1 << 20
 #: A spec is 5 levels deep. Trees are walked by recursion, which must not meet Python's limit.
 MOST_LEVELS = 24
 #: A spec has some 100 names and values; a file may well hold hundreds of specs.
 MOST_NODES = 50_000
 #: After so many complaints nothing is read behind a syntax error; each costs a pass.
 _ENOUGH = 50
-
-
-@dataclass(frozen=True, slots=True)
-class Scalar:
-    """A text, and whether it stands without quotes."""
-
-    text: str
-    span: Span
-    plain: bool
-
-
-@dataclass(frozen=True, slots=True)
-class Sequence:
-    """A list; its place is that of its first item, as YAML's end of it runs too far."""
-
-    items: "tuple[Node, ...]"
-    span: Span
-
-
-@dataclass(frozen=True, slots=True)
-class Entry:
-    """A name with its value."""
-
-    key: Scalar
-    value: "Node"
-
-
-@dataclass(frozen=True, slots=True)
-class Mapping:
-    """Names with values, in the order of the file; its place is that of its first name."""
-
-    entries: dict[str, Entry]
-    span: Span
-
-
-Node: TypeAlias = Scalar | Mapping | Sequence
-
-
-@dataclass(frozen=True, slots=True)
-class Document:
-    """One document of a file that may hold several."""
-
-    root: Mapping
-    #: Counted from 1; empty documents do not count.
-    index: int
-
-    @property
-    def line(self) -> int:
-        """Return the line of its first name."""
-        return self.root.span.line
 
 
 @dataclass(frozen=True, slots=True)
@@ -88,103 +38,12 @@ def read(data: bytes) -> Reading:
     return _read(data, _FASTEST)
 
 
-def plain(node: Node) -> Any:
-    """Return a node as bare ``dict``, ``list`` and ``str``."""
-    if isinstance(node, Scalar):
-        return node.text
-    if isinstance(node, Mapping):
-        return {name: plain(entry.value) for name, entry in node.entries.items()}
-    return [plain(item) for item in node.items]
-
-
-def find(node: Node, path: Iterable[str | int]) -> Node | None:
-    """Return the value at a path of names and list positions, if there is one."""
-    for step in path:
-        if (entry := _step(node, step)) is None:
-            return None
-        node = entry.value
-    return node
-
-
-def span_of(node: Node, path: Iterable[str | int], *, key: bool = False) -> Span:
-    """Return the place of the value at a path, or with ``key`` that of the name before it.
-
-    Where the path leaves the tree, the last value on it stands in for the rest.
-    """
-    span = node.span
-    for step in path:
-        if (entry := _step(node, step)) is None:
-            break
-        node = entry.value
-        span = entry.key.span if key else node.span
-    return span
-
-
-def _step(node: Node, step: str | int) -> Entry | None:
-    if isinstance(node, Mapping):
-        return node.entries.get(step) if isinstance(step, str) else None
-    if isinstance(node, Sequence) and isinstance(step, int) and 0 <= step < len(node.items):
-        return Entry(Scalar("", node.items[step].span, plain=True), node.items[step])
-    return None
-
-
-#: Line ends to YAML, but not to every editor: they would shift all lines below.
-_LINE_ENDS = "\v\f\r\x85\u2028\u2029"
-_FOREIGN = re.compile("[\0-\x08\v-\x1f\x7f-\x9f\u2028\u2029\ufeff\ufffe\uffff]")
-_INDENTING_TAB = re.compile(r"^ *(\t)[ \t]*[^ \t\r\n#]", re.MULTILINE)
-_DIRECTIVE = re.compile(r"^%(?!YAML[ \t]+1\.[12][ \t]*(#|$)).*", re.MULTILINE)
-
-
 def _read(data: bytes, parser: Callable[[str], Any]) -> Reading:
     """Read with a given parser; a text that is not clean is not parsed at all."""
-    if len(data) > MOST_BYTES:
-        size = f"the file has {len(data):,} bytes, more than {MOST_BYTES:,}: split it"
-        return Reading((), (Complaint(TOP, size),))
-    try:
-        text = data.decode().removeprefix("\ufeff")
-    except UnicodeDecodeError as error:
-        return Reading((), (_not_utf8(data, error.start),))
-    if unclean := sorted(_unclean(text), key=lambda one: one.span):
-        return Reading((), tuple(unclean))
-    # The directives left are harmless, and as comments they are so to every parser.
-    text = f"\n{text}".replace("\n%", "\n#").replace("\t", " ")[1:]
-    # libyaml takes the end of a last line without line end for a line of its own.
-    return _Trees(text if text.endswith("\n") else f"{text}\n", parser).read()
-
-
-def _not_utf8(data: bytes, start: int) -> Complaint:
-    """Name the byte that is not UTF-8, and the character older programs mean by it."""
-    if data.startswith((b"\xff\xfe", b"\xfe\xff")):
-        return Complaint(TOP, "the file is in UTF-16: save it as UTF-8")
-    before = data[:start].decode().removeprefix("\ufeff")
-    meant = data[start : start + 1].decode("cp1252", "ignore") or "nothing"
-    what = f"byte 0x{data[start]:02X} at offset {start} ({meant} in Windows-1252) is not UTF-8"
-    return Complaint(_place(before, len(before)), f"{what}: save the file as UTF-8")
-
-
-def _unclean(text: str) -> Iterator[Complaint]:
-    """Complain about the first of each character, tab and directive that has no place here."""
-    text = text.replace("\r\n", "\n")
-    for character in sorted(set(_FOREIGN.findall(text))):
-        line_end = character in _LINE_ENDS
-        what = "a line end to some programs only: use LF" if line_end else "no text: delete it"
-        what = f"the character U+{ord(character):04X} is {what}"
-        yield Complaint(_place(text, text.index(character)), what)
-    if "\t" in text and (tab := _INDENTING_TAB.search(text)):
-        yield Complaint(_place(text, tab.start(1)), "indent with blanks, not with a tab")
-    if (text[:1] == "%" or "\n%" in text) and (found := _DIRECTIVE.search(text)):
-        what = f"{_short(found[0])} is not read: only %YAML 1.2 may begin a line with %"
-        yield Complaint(_place(text, found.start()), what)
-
-
-def _place(text: str, index: int, length: int = 1) -> Span:
-    line = text.count("\n", 0, index) + 1
-    column = index - text.rfind("\n", 0, index)
-    return Span(line, column, line, column + length)
-
-
-def _short(text: str, most: int = 48) -> str:
-    return text if len(text) <= most else f"{text[: most - 1]}…"
+    text = clean_text(data)
+    if not isinstance(text, str):
+        return Reading((), tuple(text))
+    return _Trees(text, parser).read()
 
 
 _DOCUMENT = re.compile(r"^---(?=[ \r\n]|\Z)", re.MULTILINE)
@@ -255,7 +114,7 @@ class _Trees:
     def _collection(self, event: Any, level: int) -> Node:
         if type(event) is yaml.AliasEvent:
             alias = Scalar(f"*{event.anchor}", _span(event, event), plain=True)
-            what = f"the alias {_short(alias.text)} is not read: state the value, or {_QUOTE}"
+            what = f"the alias {short(alias.text)} is not read: state the value, or {_QUOTE}"
             self._complain(alias.span, what)
             return alias
         if event.tag or event.anchor:
@@ -289,7 +148,7 @@ class _Trees:
             self._complain(key.span, "the merge key << is not read: write its lines out")
         elif key.text in entries:
             what = f"is stated twice, first in line {entries[key.text].key.span.line}: delete one"
-            self._complain(key.span, f"{_short(key.text)} {what}")
+            self._complain(key.span, f"{short(key.text)} {what}")
         else:
             entries[key.text] = Entry(key, value)
 
@@ -297,7 +156,7 @@ class _Trees:
         """Return the empty value behind a name; the parsers disagree about its place."""
         if isinstance(key, Scalar) and key.plain and ":" in key.text:
             what = "is a name without a value: put a blank after the colon"
-            self._complain(key.span, f"{_short(key.text)} {what}")
+            self._complain(key.span, f"{short(key.text)} {what}")
         end = key.span.end_line, key.span.end_column
         return Scalar("", Span(*end, *end), plain=True)
 
@@ -314,9 +173,9 @@ class _Trees:
         index = event.start_mark.index
         while found := _PROPERTY.match(self.text, index):
             index, sign = found.end(), found[1]
-            span = _place(self.text, found.start(1), len(sign))
+            span = place(self.text, found.start(1), len(sign))
             what = "anchor" if sign[0] == "&" else "tag"
-            self._complain(span, f"the {what} {_short(sign)} is not read: delete it, or {_QUOTE}")
+            self._complain(span, f"the {what} {short(sign)} is not read: delete it, or {_QUOTE}")
 
     def _complain(self, span: Span, message: str) -> None:
         self.complaints.append(Complaint(span, message))
@@ -333,7 +192,7 @@ class _Trees:
         if at == "here" or (at == "line" and "\n" not in text[index:stop]):
             index = stop
         line = text[text.rfind("\n", 0, index) + 1 :].partition("\n")[0]
-        self._complain(_place(text, index), f"{sentence} (in: {_short(line.strip())})")
+        self._complain(place(text, index), f"{sentence} (in: {short(line.strip())})")
         return stop
 
 

@@ -5,8 +5,6 @@ from dataclasses import dataclass, field, replace
 from datetime import date
 
 from reglint import quantity
-from reglint.document import Document, Node, Scalar, find, plain, span_of
-from reglint.document import Mapping as MappingNode
 from reglint.errors import QuantityError
 from reglint.formula import Formula, Number, evaluate, names_in
 from reglint.functions import REAL
@@ -15,6 +13,8 @@ from reglint.part import Part
 from reglint.quantity import Range
 from reglint.source import Complaint, Span
 from reglint.spec import Assumption, Spec, Term, Waiver
+from reglint.tree import Document, Node, Scalar, find, plain, span_of
+from reglint.tree import Mapping as MappingNode
 
 #: The temperature at which components are stated.
 _REFERENCE = 25.0

@@ -5,7 +5,6 @@ from textwrap import fill
 
 from reglint.circuit import without_policy
 from reglint.errors import UsageError
-from reglint.formula import Formula
 from reglint.kind import Field, Kind, Quantity
 from reglint.nearest import hint
 from reglint.policy import PartClass, Policy
@@ -149,8 +148,5 @@ def _part_class(rows: PartClass) -> Iterator[str]:
             yield _said("", f"not for {style}: {reason}")
     for style, figures in rows.styles.items():
         if figures:
-            yield _said("", f"{style}: {_figures(figures.items())}")
-
-
-def _figures(figures: "Iterator[tuple[str, Formula]] | object") -> str:
-    return ", ".join(f"{name} {formula.text}" for name, formula in figures)  # type: ignore[attr-defined]
+            listed = ", ".join(f"{name} {formula.text}" for name, formula in figures.items())
+            yield _said("", f"{style}: {listed}")

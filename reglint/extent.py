@@ -6,8 +6,8 @@ import numpy as np
 
 from reglint.box import Box
 from reglint.finding import Extent
-from reglint.values import Values
 from reglint.proof import look
+from reglint.values import Values
 from reglint.worstcase import Array, Measure, at, search
 
 

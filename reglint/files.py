@@ -4,7 +4,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from pathlib import Path
 
-from reglint.document import MOST_BYTES
+from reglint.plaintext import MOST_BYTES
 
 
 @dataclass(frozen=True, slots=True)

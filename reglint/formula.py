@@ -10,7 +10,7 @@ import operator
 import re
 from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass, replace
-from typing import Any, TypeAlias, TypeVar
+from typing import Any, TypeAlias, TypeVar, cast
 
 from reglint.dimension import Dimension
 from reglint.errors import DimensionError, FormulaError
@@ -147,15 +147,17 @@ def evaluate(node: Expression, names: Callable[[str], T], arithmetic: Arithmetic
     try:
         match node:
             case Operation(sign, left, Number(power)) if sign == "**":
-                return _JOIN[sign](evaluate(left, names, arithmetic), power)
+                base: Any = evaluate(left, names, arithmetic)
+                return cast(T, base**power)
             case Operation(sign, left, right):
                 first = evaluate(left, names, arithmetic)
-                return _JOIN[sign](first, evaluate(right, names, arithmetic))
+                return cast(T, _JOIN[sign](first, evaluate(right, names, arithmetic)))
             case Call(function, arguments):
                 values = [evaluate(each, names, arithmetic) for each in arguments]
                 return arithmetic.functions[function](*values)
             case Negative(operand):
-                return operator.neg(evaluate(operand, names, arithmetic))
+                inner: Any = evaluate(operand, names, arithmetic)
+                return cast(T, -inner)
     except DimensionError as error:
         raise FormulaError(str(error), node.offset) from error
 
@@ -233,7 +235,8 @@ def _python_tree(bare: str) -> ast.expr:
         # A blank first bracket keeps the columns and lets a formula start with blanks.
         return ast.parse(f"({bare}\n)", mode="eval").body
     except SyntaxError as error:
-        offset = max(blanks, min((error.offset or 1) - 2, len(bare)))
+        at_end = (error.lineno or 1) > 1
+        offset = len(bare) if at_end else max(blanks, (error.offset or 1) - 2)
         raise FormulaError(
             "this is not a formula; something is missing or left over", offset
         ) from None

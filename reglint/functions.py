@@ -73,16 +73,18 @@ def _if_positive(test: Array, yes: Array, no: Array) -> Array:
 
 def _fold(pairwise: Callable[[Any, Any], Any]) -> Callable[..., Array]:
     def folded(first: Array, *rest: Array) -> Array:
+        result: Array = first
         for other in rest:
-            first = pairwise(first, other)
-        return first
+            result = pairwise(result, other)
+        return result
 
     return folded
 
 
 def _off_preferred(value: Array, tolerance: Array) -> Array:
     """Compare element by element: the series is a table, not a formula."""
-    return np.vectorize(off_preferred, otypes=[float])(value, tolerance)
+    distance: Array = np.vectorize(off_preferred, otypes=[float])(value, tolerance)
+    return distance
 
 
 def _plain_constant(value: float, _dimension: Dimension) -> Array:

@@ -78,7 +78,7 @@ class Gradient:
         if isinstance(exponent, Gradient) and exponent.partials is not None:
             return exp(exponent * log(self))
         power = exponent.value if isinstance(exponent, Gradient) else exponent
-        slope = power * self.value ** (power - 1.0)
+        slope = lift(power) * self.value ** (power - 1.0)
         return _chain(self.value**power, (self.partials, slope))
 
 
@@ -100,7 +100,7 @@ def _sum(one: Interval | None, other: Interval | None) -> Interval | None:
     return one + other
 
 
-def _chain(value: Interval, *terms: tuple[Interval | None, Like]) -> Gradient:
+def _chain(value: Interval, *terms: tuple[Interval | None, Interval | float]) -> Gradient:
     """Return a value whose partials are the sum of inner partials times outer slopes."""
     partials = None
     for inner, slope in terms:
@@ -206,7 +206,7 @@ def falling(value: Like, full_until: Like, zero_at: Like) -> Gradient:
 
 
 def agreeing(test: Like, other: Like, value: Like) -> Gradient:
-    """Return a value, drawn closer by another form of it that agrees where the test is positive.
+    """Return a value, drawn closer by a form of it that agrees where the test is positive.
 
     There both forms enclose the same function, so its partials lie in both forms' partials.
     """

@@ -249,7 +249,7 @@ def meet(one: Interval, other: Interval) -> Interval:
 
 
 def agreeing(test: Like, other: Like, value: Like) -> Interval:
-    """Return a value, drawn closer by another form of it that agrees where the test is positive."""
+    """Return a value, drawn closer by a form of it that agrees where the test is positive."""
     value = lift(value)
     return where(lift(test).low > 0.0, meet(value, lift(other)), value)
 

@@ -10,12 +10,13 @@ from reglint.box import Box, box_of, numbers_of
 from reglint.circuit import Circuit
 from reglint.extent import extents
 from reglint.finding import Extent, Finding, Outcome, Verdict
+from reglint.formula import Formula
 from reglint.margin import Margin
 from reglint.proof import Look, Proven, look, prove
 from reglint.rule import Rule
 from reglint.shares import shares
 from reglint.spec import Spec
-from reglint.worstcase import at
+from reglint.worstcase import Array, at
 
 
 @dataclass(frozen=True, slots=True)
@@ -155,12 +156,14 @@ def _judged(
         )
 
 
+def _side(box: Box, side: Formula, proven: Proven) -> Array:
+    """Return one side of a rule at each spec's worst point."""
+    return at(box, lambda scope: scope.of(side), proven.point[:, None, :])[:, 0]
+
+
 def _worst_points(box: Box, rule: Rule, proven: Proven) -> Iterator[ruling.WorstPoint]:
     """Yield each spec's worst point with both sides of the rule and the shares there."""
-    values, limits = (
-        at(box, lambda scope, side=side: scope.of(side), proven.point[:, None, :])[:, 0]
-        for side in (rule.holds.value, rule.holds.limit)
-    )
+    values, limits = (_side(box, side, proven) for side in (rule.holds.value, rule.holds.limit))
     eaten = shares(box, Margin(rule), proven.point)
     asked = _asked(box, rule)
     for row, point in enumerate(proven.point):

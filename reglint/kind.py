@@ -1,16 +1,16 @@
 """A kind of regulator: its fields, the quantities that follow, its operating conditions."""
 
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from dataclasses import field as dataclass_field
 from typing import TypeVar
 
 from reglint import quantity
 from reglint.dimension import ONE, Dimension
-from reglint.document import Document, Node, plain
-from reglint.document import Mapping as MappingNode
 from reglint.formula import Formula
 from reglint.statement import Statements
+from reglint.tree import Document, plain, section, sections
+from reglint.tree import Mapping as MappingNode
 
 T = TypeVar("T")
 
@@ -175,8 +175,8 @@ def read_kind(document: Document, name: str, file: str, statements: Statements) 
     root = document.root
     texts = plain(root)
 
-    def each(section: str, read: Callable[[str, MappingNode], T]) -> dict[str, T]:
-        return {path: read(path, node) for path, node in _items(root, section)}
+    def each(name: str, read: Callable[[str, MappingNode], T]) -> dict[str, T]:
+        return {path: read(path, node) for path, node in sections(section(root, name)).items()}
 
     return Kind(
         name=name,
@@ -188,16 +188,9 @@ def read_kind(document: Document, name: str, file: str, statements: Statements) 
         totals=each("totals", _read_total),
         quantities=each("quantities", lambda path, node: _read_quantity(path, node, statements)),
         conditions=each("conditions", lambda path, node: _read_condition(path, node, statements)),
-        sample=root.entries["sample"].value,
+        sample=section(root, "sample"),
         file=file,
     )
-
-
-def _items(root: MappingNode, section: str) -> Iterator[tuple[str, MappingNode]]:
-    entry = root.entries.get(section)
-    if entry is not None:
-        for key, item in entry.value.entries.items():
-            yield key, item.value
 
 
 def _read_component(name: str, node: MappingNode) -> Component:
@@ -250,19 +243,19 @@ def _read_total(path: str, node: MappingNode) -> Total:
 
 def _read_quantity(path: str, node: MappingNode, statements: Statements) -> Quantity:
     texts = plain(node)
-    solve = node.entries.get("solve")
+    solved = "solve" in node.entries
     return Quantity(
         path=path,
         unit=texts["unit"],
         says=texts["says"],
-        formula=statements.formula(node, "is") if solve is None else None,
-        root=None if solve is None else _read_root(solve.value, statements),
+        formula=None if solved else statements.formula(node, "is"),
+        root=_read_root(section(node, "solve"), statements) if solved else None,
         given=statements.named(node, "given"),
         symbol=texts.get("symbol", ""),
     )
 
 
-def _read_root(node: Node, statements: Statements) -> Root:
+def _read_root(node: MappingNode, statements: Statements) -> Root:
     return Root(
         falling=statements.formula(node, "falling"),
         start=statements.formula(node, "from"),

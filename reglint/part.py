@@ -3,7 +3,7 @@
 from collections.abc import Iterator
 from dataclasses import dataclass
 
-from reglint.document import Document, Mapping, Node, plain
+from reglint.tree import Document, Mapping, Node, plain, section, sections
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,16 +31,15 @@ class Part:
 
 def read_parts(document: Document, file: str) -> Iterator[Part]:
     """Yield the parts of a document that its schema accepts."""
-    entries = document.root.entries
     texts = plain(document.root)
-    common = entries["common"].value if "common" in entries else Mapping({}, document.root.span)
-    for name, entry in entries["parts"].value.entries.items():
+    common = section(document.root, "common")
+    for name, own in sections(section(document.root, "parts")).items():
         yield Part(
             name=name,
             part_class=texts["class"],
             title=texts["title"],
             source=texts["source"].strip(),
-            own=entry.value,
+            own=own,
             common=common,
             file=file,
         )

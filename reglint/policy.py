@@ -3,10 +3,10 @@
 from collections.abc import Mapping
 from dataclasses import dataclass
 
-from reglint.document import Document, plain
-from reglint.document import Mapping as MappingNode
 from reglint.formula import Formula
 from reglint.statement import Statements
+from reglint.tree import Document, plain, section, sections
+from reglint.tree import Mapping as MappingNode
 
 
 @dataclass(frozen=True, slots=True)
@@ -50,28 +50,28 @@ class Policy:
 def read_policy(document: Document, name: str, file: str, statements: Statements) -> Policy:
     """Build a policy from a document that its schema accepts; complaints go to ``statements``."""
     texts = plain(document.root)
-    classes = document.root.entries["classes"].value.entries
+    classes = sections(section(document.root, "classes"))
     return Policy(
         name=name,
         title=texts["title"],
         about=texts["about"].strip(),
         source=texts["source"].strip(),
-        classes={key: _read_class(key, item.value, statements) for key, item in classes.items()},
+        classes={key: _read_class(key, node, statements) for key, node in classes.items()},
         file=file,
     )
 
 
 def _read_class(name: str, node: MappingNode, statements: Statements) -> PartClass:
     texts = plain(node)
-    styles = node.entries["styles"].value if "styles" in texts else MappingNode({}, node.span)
+    styles = section(node, "styles")
     return PartClass(
         name=name,
         default_style=texts.get("default_style", ""),
         styles={style: statements.named(styles, style) for style in styles.entries},
         allowances={
-            key: _read_allowance(key, item.value, statements)
-            for key, item in node.entries.items()
-            if key not in ("styles", "default_style")
+            key: _read_allowance(key, inner, statements)
+            for key, inner in sections(node).items()
+            if key != "styles"
         },
     )
 

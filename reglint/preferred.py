@@ -31,8 +31,8 @@ _E24 = (
     82,
     91,
 )
-#: From E48 on the values follow 10**(n/N) to three digits, but for one.
-_E192 = tuple(920 if n == 185 else round(100.0 * 10.0 ** (n / 192.0)) for n in range(192))
+#: From E48 on the values follow 10**(n/N) to three digits, but for one: 9.20, not 9.19.
+_E192 = tuple({919: 920}.get(v := round(100.0 * 10.0 ** (n / 192.0)), v) for n in range(192))
 
 #: The significant digits of each series, over one decade.
 SERIES: Mapping[str, tuple[int, ...]] = {

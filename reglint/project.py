@@ -8,7 +8,7 @@ from dataclasses import dataclass, field
 from functools import cache
 from pathlib import Path
 
-from reglint.document import Document, Scalar, find, read
+from reglint.document import read
 from reglint.draft import read_spec
 from reglint.errors import UsageError
 from reglint.files import Folder, read_bytes
@@ -22,6 +22,7 @@ from reglint.settings import NAME, Settings, read_settings, root_above
 from reglint.source import TOP, Complaint, Problem
 from reglint.spec import Spec
 from reglint.spec_schema import spec_schema
+from reglint.tree import Document, Scalar, find
 
 
 @dataclass(slots=True)

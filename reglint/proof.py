@@ -17,7 +17,7 @@ from reglint.functions import GRADIENTS, INTERVALS
 from reglint.gradient import Gradient, variable
 from reglint.interval import Interval, lift
 from reglint.values import Values
-from reglint.worstcase import Measure, Worst, at, better_of, narrowed, search
+from reglint.worstcase import Measure, Worst, at, narrowed, search
 
 Array: TypeAlias = npt.NDArray[np.float64]
 
@@ -170,7 +170,7 @@ def _with_points(
 ) -> Worst:
     """Return the worst points found, with those that the proof came upon."""
     for row in np.flatnonzero(rows):
-        piece = pieces.take([row])
+        piece = pieces.take(np.array([row]))
         value = found.value.copy()
         point = found.point.copy()
         measured = at(piece, measure, piece.low[:, None, :])[0, 0]
@@ -191,9 +191,10 @@ def _halved(
     """Return every piece in two halves, along the name that matters most; points stay whole."""
     width = pieces.high - pieces.low
     relative = np.divide(width, ranges[owner], out=np.zeros_like(width), where=width > 0.0)
-    matters = np.where(width > 0.0, np.minimum(steepness, 1e300) * width, 0.0)
-    column = np.where(matters >= 1e290, 1e300 * relative, matters).argmax(axis=1)
-    column = np.where(matters.max(axis=1) > 0.0, column, relative.argmax(axis=1))
+    matters = np.where(width > 0.0, steepness * width, 0.0)
+    # Where a slope is unbounded, or none matters, the range least divided yet is halved.
+    clear = np.isfinite(matters).all(axis=1) & (matters.max(axis=1) > 0.0)
+    column = np.where(clear[:, None], matters, relative).argmax(axis=1)
     rows = np.arange(len(owner))
     middle = 0.5 * (pieces.low + pieces.high)[rows, column]
     upper = np.flatnonzero((width > 0.0).any(axis=1))

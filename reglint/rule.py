@@ -3,9 +3,9 @@
 from dataclasses import dataclass
 
 from reglint import quantity
-from reglint.document import Document, Mapping, plain
 from reglint.formula import Formula, Inequality
 from reglint.statement import Statements
+from reglint.tree import Document, Mapping, plain, section
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,7 +68,7 @@ def read_rule(document: Document, name: str, file: str, statements: Statements) 
         source=texts["source"].strip(),
         remedy=texts["remedy"].strip(),
         adjust=tuple(texts.get("adjust", ())),
-        passes=root.entries["passes"].value,
-        fails=root.entries["fails"].value,
+        passes=section(root, "passes"),
+        fails=section(root, "fails"),
         file=file,
     )

@@ -13,7 +13,7 @@ from typing import Literal, TypeAlias, TypeVar
 
 from reglint import check
 from reglint.circuit import Circuit, under
-from reglint.document import Document, read
+from reglint.document import read
 from reglint.files import Folder, read_bytes
 from reglint.kind import Kind, read_kind
 from reglint.nearest import hint
@@ -23,6 +23,7 @@ from reglint.rule import Rule, read_rule
 from reglint.schema import complaints, knowledge_schema
 from reglint.source import TOP, Complaint, Problem
 from reglint.statement import Statements
+from reglint.tree import Document
 
 T = TypeVar("T")
 

@@ -8,7 +8,7 @@ from reglint import quantity
 from reglint.check import names_of
 from reglint.circuit import Circuit
 from reglint.finding import Finding, Outcome, Share
-from reglint.formula import Name, evaluate
+from reglint.formula import evaluate
 from reglint.functions import DIMENSIONS
 from reglint.kind import Kind
 from reglint.rule import Rule

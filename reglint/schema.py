@@ -15,10 +15,10 @@ from jsonschema import Draft202012Validator
 from jsonschema.exceptions import ValidationError
 from jsonschema.validators import extend
 
-from reglint.document import Mapping as MappingNode
-from reglint.document import plain, span_of
 from reglint.nearest import hint
 from reglint.source import Complaint
+from reglint.tree import Mapping as MappingNode
+from reglint.tree import plain, span_of
 
 Schema: TypeAlias = Mapping[str, Any]
 Errors: TypeAlias = Iterator[ValidationError]
@@ -26,13 +26,15 @@ Errors: TypeAlias = Iterator[ValidationError]
 #: The files of knowledge that have a schema of their own.
 KNOWLEDGE = ("rule", "kind", "policy", "part", "settings")
 
+#: The JSON type of what a tree is made of.
+_FOUND: Mapping[type, str] = {str: "string", dict: "object", list: "array"}
 #: What each JSON type is called in a message.
 _TYPE_WORDS = {"string": "a text", "object": "a mapping", "array": "a list", "number": "a number"}
 
 
 def _type(_validator: Any, wanted: str | list[str], instance: Any, schema: Schema) -> Errors:
     kinds = [wanted] if isinstance(wanted, str) else wanted
-    found = {str: "string", dict: "object", list: "array"}[type(instance)]
+    found = _FOUND[type(instance)]
     if found not in kinds:
         words = " or ".join(_TYPE_WORDS[kind] for kind in kinds)
         yield ValidationError(
@@ -96,7 +98,7 @@ def _editors_only(*_arguments: Any) -> Errors:
     yield from ()
 
 
-_Validator = extend(
+_Validator: Any = extend(  # type: ignore[no-untyped-call]
     Draft202012Validator,
     {
         "type": _type,

@@ -5,10 +5,11 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
-from reglint.document import plain, read
+from reglint.document import read
 from reglint.files import read_bytes
 from reglint.schema import complaints, knowledge_schema
 from reglint.source import TOP, Complaint
+from reglint.tree import plain
 
 #: The file that marks the root of a project.
 NAME = "reglint.yaml"

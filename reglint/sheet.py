@@ -37,8 +37,9 @@ def _heading(spec: Spec, circuit: Circuit) -> Iterator[str]:
     yield f"Calculation sheet of {spec.name} ({circuit.kind.title}), {spec.file}, line {spec.line}"
     yield f"Derating: {circuit.policy.title} ({circuit.policy.name})"
     yield "Under each formula stand the nominal values; least and most are over the box."
-    yield "knee(x, m) = (x ** (1 - m) - 1) / (1 - m), or log(x) at m = 1; falling(x, a, b) falls from"
-    yield "1 at a to 0 at b; if_positive(x, a, b) is a where x > 0, else b; log is natural."
+    yield "knee(x, m) = (x ** (1 - m) - 1) / (1 - m), log(x) at m = 1; falling(x, a, b) falls"
+    yield "from 1 at a to 0 at b; if_positive(x, a, b) is a where x > 0, else b;"
+    yield "agreeing(x, a, b) is b, which equals a where x > 0; log is natural."
     yield ""
 
 

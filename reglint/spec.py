@@ -4,10 +4,10 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from datetime import date
 
-from reglint.document import Mapping as MappingNode
-from reglint.document import find, span_of
 from reglint.kind import Kind
 from reglint.source import Span
+from reglint.tree import Mapping as MappingNode
+from reglint.tree import find, span_of
 
 
 @dataclass(frozen=True, slots=True)

@@ -3,10 +3,10 @@
 from collections.abc import Iterable
 from typing import Any
 
-from reglint.document import plain
 from reglint.kind import WORDS, Field, Kind
 from reglint.quantity import unit_pattern
 from reglint.schema import Schema
+from reglint.tree import plain
 
 _DRAFT = "https://json-schema.org/draft/2020-12/schema"
 _TEXT: Schema = {"type": "string", "minLength": 1}

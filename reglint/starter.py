@@ -2,9 +2,9 @@
 
 from collections.abc import Iterator
 
-from reglint.document import Mapping as MappingNode
-from reglint.document import Node, Scalar
 from reglint.kind import Field, Kind
+from reglint.tree import Mapping as MappingNode
+from reglint.tree import Node, Scalar
 
 _COMPONENT = {
     "ref": "Reference designator (IEEE 315).",

@@ -4,11 +4,11 @@ from collections.abc import Callable
 from dataclasses import dataclass, field, replace
 from typing import TypeVar
 
-from reglint.document import Mapping as MappingNode
-from reglint.document import Scalar, Sequence
 from reglint.errors import FormulaError
 from reglint.formula import Formula, Inequality, parse, parse_inequality
 from reglint.source import Complaint, Span
+from reglint.tree import Mapping as MappingNode
+from reglint.tree import Scalar, Sequence, section
 
 T = TypeVar("T")
 
@@ -40,10 +40,8 @@ class Statements:
 
     def named(self, node: MappingNode, key: str) -> dict[str, Formula]:
         """Return the formulas in the mapping at a key, empty where it is not stated."""
-        entry = node.entries.get(key)
-        inner = entry.value if entry else None
-        names = inner.entries if isinstance(inner, MappingNode) else {}
-        return {name: self.formula(inner, name) for name in names}
+        inner = section(node, key)
+        return {name: self.formula(inner, name) for name in inner.entries}
 
     def _read(self, scalar: Scalar, read: Callable[[str, Span], T], otherwise: T) -> T:
         try:

@@ -82,7 +82,7 @@ class Values(Generic[T]):
     def mapped(self, arithmetic: Arithmetic[U], convert: Callable[[T], U]) -> "Values[U]":
         """Return the same scope in another kind of number; what was computed is not kept."""
         given = {name: convert(self._known[name]) for name in self._given}
-        outer = self._outer and self._outer.mapped(arithmetic, convert)
+        outer = self._outer.mapped(arithmetic, convert) if self._outer else None
         return Values(self._circuit, arithmetic, given, outer)
 
     def _compute(self, quantity: Quantity) -> T:
@@ -90,7 +90,8 @@ class Values(Generic[T]):
         if quantity.given:
             scope = self.within({name: self.of(to) for name, to in quantity.given.items()})
         if quantity.root is not None:
-            return self._arithmetic.solve(Equation(scope, quantity.path, quantity.root))
+            equation = Equation(scope, quantity.path, quantity.root)
+            return self._arithmetic.solve(equation)  # type: ignore[arg-type]  # generic `mapped`
         assert quantity.formula is not None  # noqa: S101 -- one of the two, by the schema
         return scope.of(quantity.formula)
 

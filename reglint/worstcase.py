@@ -1,4 +1,4 @@
-"""The worst case of a measure over a box: the worst point found, and the proof of how bad it can be.
+"""The worst case of a measure over a box: the search for its worst point.
 
 First the measure's partials over the whole box: where one has a sure sign, the worst lies
 at an end of that name's range. What remains is searched, corners first and then inside

@@ -6,12 +6,12 @@ from pathlib import Path
 
 import pytest
 
-from reglint.document import Mapping as MappingNode
-from reglint.document import Node, Scalar
 from reglint.finding import Run
 from reglint.judge import Wanted
 from reglint.project import Project
 from reglint.rulebook import Rulebook
+from reglint.tree import Mapping as MappingNode
+from reglint.tree import Node, Scalar
 
 TODAY = date(2026, 12, 1)
 

@@ -9,23 +9,10 @@ from typing import Any, TypeAlias
 
 import pytest
 
-from reglint.document import (
-    _FASTEST,
-    MOST_BYTES,
-    MOST_NODES,
-    Document,
-    Mapping,
-    Reading,
-    Scalar,
-    Sequence,
-    _PureParser,
-    _read,
-    find,
-    plain,
-    read,
-    span_of,
-)
+from reglint.document import _FASTEST, MOST_NODES, Reading, _PureParser, _read, read
+from reglint.plaintext import MOST_BYTES
 from reglint.source import TOP, Complaint, Span
+from reglint.tree import Document, Mapping, Scalar, Sequence, find, plain, span_of
 
 Reader: TypeAlias = Callable[[bytes | str], Reading]
 

@@ -81,10 +81,9 @@ def _finding(verdict: Verdict, finding: Finding, options: Options) -> Iterator[s
 
 def _corner(verdict: Verdict, corner: Mapping[str, float]) -> str:
     kind = verdict.spec.kind
-    units = {**kind.fields, **kind.totals}
-    return ", ".join(
-        f"{name} {quantity(value, units[name].unit)}" for name, value in corner.items()
-    )
+    units = {path: field.unit for path, field in kind.fields.items()}
+    units |= {path: total.unit for path, total in kind.totals.items()}
+    return ", ".join(f"{name} {quantity(value, units[name])}" for name, value in corner.items())
 
 
 def _shares(finding: Finding) -> str:

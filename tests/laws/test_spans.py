@@ -14,19 +14,9 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from reglint.document import (
-    _FASTEST,
-    Mapping,
-    Node,
-    Scalar,
-    Sequence,
-    _PureParser,
-    _read,
-    find,
-    plain,
-    span_of,
-)
+from reglint.document import _FASTEST, _PureParser, _read
 from reglint.source import Span
+from reglint.tree import Mapping, Node, Scalar, Sequence, find, plain, span_of
 
 PARSERS = pytest.mark.parametrize("parser", [_FASTEST, _PureParser], ids=["fastest", "pure"])
 

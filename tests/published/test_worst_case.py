@@ -181,6 +181,7 @@ zener:
 
 @pytest.fixture(scope="module")
 def cases() -> list[Case]:
+    """Return the random regulators."""
     return [Case(seed) for seed in range(SPECS)]
 
 
@@ -188,6 +189,7 @@ def cases() -> list[Case]:
 def findings(
     tmp_path_factory: pytest.TempPathFactory, cases: list[Case]
 ) -> list[dict[str, Finding]]:
+    """Return each regulator's findings by rule, through a user's path."""
     folder = tmp_path_factory.mktemp("random")
     paths = [folder / f"{seed:03}.reg.yaml" for seed in range(SPECS)]
     for path, case in zip(paths, cases, strict=True):
