@@ -244,7 +244,7 @@ def if_positive(test: Like, yes: Like, no: Like) -> Interval:
 
 
 def meet(one: Interval, other: Interval) -> Interval:
-    """Return what lies in both of two enclosures of the same values; NaN in one leaves the other."""
+    """Return what lies in both enclosures of the same values; NaN in one leaves the other."""
     return Interval(np.fmax(one.low, other.low), np.fmin(one.high, other.high))
 
 

@@ -13,10 +13,10 @@ Array: TypeAlias = npt.NDArray[np.float64]
 #: How far from a root in the middle of its box an enclosure's ends are tried, as fractions:
 #: close by, which does for a point, and further out for a wide box.
 _CLOSE = np.array([1e-11])
-_FAR = np.array(
-    [1e-8, 1e-5, 1e-4, 1e-3, 3e-3, 0.01, 0.02, 0.03, 0.05, 0.07, 0.1, 0.13, 0.17, 0.2]
-    + [0.25, 0.3, 0.35, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 0.99]  # noqa: RUF005 -- two lines
+_FAR = np.concatenate(
+    (np.geomspace(1e-8, 1e-3, 6), np.linspace(0.005, 0.1, 8), np.linspace(0.13, 0.99, 14))
 )
+
 #: A residual this small against those at the ends is rounding.
 _SMALL = 1e-14
 #: Enough halvings to bring any bracket of doubles down to neighbouring numbers.

@@ -65,7 +65,7 @@ def search(box: Box, measure: Measure) -> Worst:
     point = box.low.copy()
     free = (box.low != box.high).any(axis=1)
     for rows, find in ((~free, _only_point), (free, _searched)):
-        for some in _slices(np.flatnonzero(rows), _rows_at_once(box, rows)):
+        for some in slices(np.flatnonzero(rows), _rows_at_once(box, rows)):
             found = find(box.take(some), measure)
             value[some], point[some] = found.value, found.point
     return Worst(value, point)
@@ -83,29 +83,31 @@ def _only_point(box: Box, measure: Measure) -> Worst:
 def _searched(box: Box, measure: Measure) -> Worst:
     """Look at the corners, then inside from the worst of them; climb where it gets worse."""
     corners = box.corners()
-    start = _least(corners, at(box, measure, corners))
-    seen = _screened(box, measure, start)
-    better = np.flatnonzero(_improves(seen.value, start.value) | np.isnan(seen.value))
+    start = least(corners, at(box, measure, corners))
+    seen = screened(box, measure, start)
+    better = np.flatnonzero(improves(seen.value, start.value) | np.isnan(seen.value))
     value, point = start.value.copy(), start.point.copy()
-    for rows in _slices(better, POINTS_AT_ONCE // len(_GRID)):
-        climbed = _climb(box.take(rows), measure, Worst(seen.value[rows], seen.point[rows]))
+    for rows in slices(better, POINTS_AT_ONCE // len(_GRID)):
+        climbed = climb(box.take(rows), measure, Worst(seen.value[rows], seen.point[rows]))
         value[rows], point[rows] = climbed.value, climbed.point
     return Worst(value, point)
 
 
-def _least(points: Array, measured: Array) -> Worst:
+def least(points: Array, measured: Array) -> Worst:
     """Return the least of the measured points of each row; NaN wins, so that it is seen."""
     index = measured.argmin(axis=1)
     rows = np.arange(len(points))
     return Worst(measured[rows, index], points[rows, index])
 
 
-def _slices(rows: npt.NDArray[np.intp], size: int) -> Iterator[npt.NDArray[np.intp]]:
+def slices(rows: npt.NDArray[np.intp], size: int) -> Iterator[npt.NDArray[np.intp]]:
+    """Yield the rows in pieces of at most ``size``."""
     for start in range(0, len(rows), size):
         yield rows[start : start + size]
 
 
-def _improves(new: Array, old: Array) -> npt.NDArray[np.bool_]:
+def improves(new: Array, old: Array) -> npt.NDArray[np.bool_]:
+    """Tell where a value is less than another by more than rounding."""
     return new < old - _GAIN * np.minimum(np.abs(old), 1.0)
 
 
@@ -114,25 +116,41 @@ def _moving(box: Box) -> npt.NDArray[np.intp]:
     return np.flatnonzero((box.low != box.high).any(axis=0))
 
 
-def _screened(box: Box, measure: Measure, start: Worst) -> Worst:
+def screened(box: Box, measure: Measure, start: Worst) -> Worst:
     """Look at a few points along every line through the worst corners."""
-    step = box.low + box.high - 2.0 * start.point
+    points = lines_through(box, start.point)
+    return least(points, at(box, measure, points))
+
+
+def lines_through(box: Box, corner: Array) -> Array:
+    """Return points inside along every line from a corner of each spec, as shape (s, p, n)."""
+    step = box.low + box.high - 2.0 * corner
     lines = np.eye(len(box.names))[_moving(box)]
-    moves = (lines[:, None, :] * _SCREEN[None, :, None]).reshape(-1, len(box.names))
-    points = start.point[:, None, :] + step[:, None, :] * moves[None, :, :]
-    return _least(points, at(box, measure, points))
+    shape = len(lines) * len(_SCREEN), len(box.names)
+    moves = (lines[:, None, :] * _SCREEN[None, :, None]).reshape(shape)
+    points: Array = corner[:, None, :] + step[:, None, :] * moves[None, :, :]
+    return points
 
 
-def _climb(box: Box, measure: Measure, start: Worst) -> Worst:
+def climb(box: Box, measure: Measure, start: Worst) -> Worst:
     """Search line by line, round after round, until no line is better."""
     best = start
     for _ in range(_ROUNDS):
         before = best.value
-        for column in _moving(box):
+        for column in _promising(box, measure, best):
             best = _along(box, measure, best, column)
-        if not _improves(best.value, before).any():
+        if not improves(best.value, before).any():
             break
     return best
+
+
+def _promising(box: Box, measure: Measure, best: Worst) -> npt.NDArray[np.intp]:
+    """Return the columns along which some spec gets worse, or lies inside its range."""
+    measured = at(box, measure, lines_through(box, best.point))
+    better = improves(measured, best.value[:, None]).any(axis=0)
+    moving = _moving(box)
+    inside = ((best.point > box.low) & (best.point < box.high)).any(axis=0)[moving]
+    return moving[better.reshape(len(moving), -1).any(axis=1) | inside]
 
 
 def _along(box: Box, measure: Measure, start: Worst, column: int) -> Worst:
@@ -142,7 +160,7 @@ def _along(box: Box, measure: Measure, start: Worst, column: int) -> Worst:
     for _ in range(_ZOOMS):
         points = np.repeat(best.point[:, None, :], len(_GRID), axis=1)
         points[:, :, column] = low[:, None] + (high - low)[:, None] * _GRID
-        found = _least(points, at(box, measure, points))
+        found = least(points, at(box, measure, points))
         best = better_of(best, found)
         cell = (high - low) / (len(_GRID) - 1)
         middle = best.point[:, column]

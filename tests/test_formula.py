@@ -8,7 +8,6 @@ from reglint.errors import FormulaError
 from reglint.formula import evaluate, names_in, parse, parse_inequality, with_names, with_numbers
 from reglint.functions import REAL
 
-
 SIN = (
     "there is no function sin; there are abs, agreeing, exp, falling, if_positive, knee, log,"
     " max, min, off_preferred, sqrt"
