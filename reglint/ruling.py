@@ -8,7 +8,7 @@ from reglint import quantity
 from reglint.check import names_of
 from reglint.circuit import Circuit
 from reglint.finding import Finding, Outcome, Share
-from reglint.formula import evaluate
+from reglint.formula import Name, evaluate
 from reglint.functions import DIMENSIONS
 from reglint.kind import Kind
 from reglint.rule import Rule
@@ -120,12 +120,12 @@ def not_checked(
 
 
 def _sentence(rule: Rule, worst: WorstPoint, unit: str) -> str:
-    demand = "at least" if rule.holds.sign == ">=" else "at most"
     value, limit = quantity.render(worst.value, unit), quantity.render(worst.limit, unit)
-    what = rule.holds.value.text.strip()
-    return (
-        f"{what} is {value} at worst, {demand} {limit} is wanted (margin {percent(worst.margin)})"
-    )
+    demand = "at least" if rule.holds.sign == ">=" else "at most"
+    what = rule.holds.value
+    subject = f"{what.text.strip()} is" if isinstance(what.root, Name) else f"{rule.title}:"
+    margin = percent(worst.margin)
+    return f"{subject} {value} at worst, {demand} {limit} is wanted (margin {margin})"
 
 
 def _no_value(rule: Rule, worst: WorstPoint) -> str:
