@@ -1,8 +1,11 @@
 """Reading a spec: from the document and its kind to typed values, or to complaints."""
 
+import math
 from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass, field, replace
 from datetime import date
+
+import numpy as np
 
 from reglint import quantity
 from reglint.errors import QuantityError
@@ -307,10 +310,13 @@ def _read_absent(draft: Draft, one: Field) -> None:
 
 
 def _derive(draft: Draft, one: Field, formula: Formula) -> bool:
-    """Try a formula for a field not stated; tell whether all it needs is there."""
+    """Try a formula for a field not stated; tell whether it has a value."""
     if not all(each.name in draft.numbers for each in names_in(formula.root)):
         return False
-    value = float(evaluate(formula.root, draft.numbers.__getitem__, REAL))  # type: ignore[arg-type]
+    with np.errstate(all="ignore"):
+        value = float(evaluate(formula.root, lambda n: np.asarray(draft.numbers[n]), REAL))
+    if not math.isfinite(value):
+        return False
     draft.numbers[one.path] = value
     source = "" if isinstance(formula.root, Number) else f"{formula.text} = "
     draft.assume(one.path, f"not stated, taken as {source}{quantity.render(value, one.unit)}")
