@@ -145,7 +145,8 @@ def _checked(name: str, function: Callable[..., Dimension], count: int) -> Calla
     """Return the function with its number of arguments checked; ``count`` 0 is one or more."""
 
     def checked(*arguments: Dimension) -> Dimension:
-        if len(arguments) != count and (count or not arguments):
+        fits = len(arguments) == count if count else bool(arguments)
+        if not fits:
             raise DimensionError(f"{name} takes {count or 'one or more'}, not {len(arguments)}")
         return function(*arguments)
 

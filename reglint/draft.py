@@ -1,7 +1,7 @@
 """Reading a spec: from the document and its kind to typed values, or to complaints."""
 
 import math
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from datetime import date
 
@@ -16,7 +16,7 @@ from reglint.part import Part
 from reglint.quantity import Range
 from reglint.source import Complaint, Span
 from reglint.spec import Assumption, Spec, Term, Waiver
-from reglint.tree import Document, Node, Scalar, find, plain, span_of
+from reglint.tree import Document, Node, Scalar, find, plain, section, span_of
 from reglint.tree import Mapping as MappingNode
 
 #: The temperature at which components are stated.
@@ -54,39 +54,63 @@ class Draft:
         self.assumptions.append(Assumption(path, says))
 
 
-def read_spec(
-    document: Document, kind: Kind, find_part: Callable[[str], Part | str], file: str, policy: str
-) -> tuple[Spec | None, list[Complaint]]:
-    """Read one spec that has passed its schema, as far as it is sound.
+class _Misread(Exception):  # noqa: N818 -- it carries a complaint to whoever knows the field
+    """A figure inside a range that is no quantity, with its own place."""
 
-    ``find_part`` gives a part by name, or the sentence that says why it cannot.
+    def __init__(self, message: str, node: Scalar) -> None:
+        super().__init__(message)
+        self.node = node
+
+
+@dataclass(frozen=True, slots=True)
+class Context:
+    """What reading a spec needs to know beside the document and its kind."""
+
+    #: The file's path as it is shown.
+    file: str
+    #: The derating policy of specs that name none.
+    policy: str
+    #: A part by name, or the sentence that says why there is none.
+    find_part: Callable[[str], Part | str]
+
+
+def read_spec(
+    document: Document, kind: Kind, context: Context, unfit: Sequence[Complaint]
+) -> tuple[Spec | None, list[Complaint]]:
+    """Read one spec as far as it goes; there is none where anything is wrong with it.
+
+    ``unfit`` is what its schema has said already; it is said again in the complaints
+    returned, in order of place and without repetition.
     """
     draft = Draft(document.root, kind, {})
-    draft.parts = dict(_parts(draft, find_part))
+    draft.parts = dict(_parts(draft, context.find_part))
     fields = [one for each in kind.fields.values() for one in _expanded(draft, each)]
     absent = [one for one in fields if not _read_stated(draft, one)]
     # What stands in for a field may need others, so all that is stated comes first.
     for one in absent:
         _read_absent(draft, one)
     _check_parts(draft)
+    _check_items(draft)
     waivers = tuple(_waivers(draft))
     _widen(draft)
-    if draft.complaints:
-        return None, draft.complaints
+    told = {each.span for each in unfit}
+    complaints = [*unfit, *(each for each in draft.complaints if each.span not in told)]
+    if complaints:
+        return None, sorted(complaints, key=lambda each: each.span)
     _total(draft)
-    return _spec(draft, waivers, file, policy), []
+    return _spec(draft, waivers, context), []
 
 
-def _spec(draft: Draft, waivers: tuple[Waiver, ...], file: str, policy: str) -> Spec:
+def _spec(draft: Draft, waivers: tuple[Waiver, ...], context: Context) -> Spec:
     texts = plain(draft.root)
     components = draft.kind.components
     styles = {name: draft.texts.get(f"{name}.style", "") for name in components}
     return Spec(
-        file=file,
+        file=context.file,
         root=draft.root,
         kind=draft.kind,
         name=texts["name"],
-        derating=texts.get("derating", policy),
+        derating=texts.get("derating", context.policy),
         styles=styles,
         numbers=draft.numbers,
         swept=draft.swept,
@@ -125,6 +149,19 @@ def _check_parts(draft: Draft) -> None:
                 draft.complain(f"{component}.part", f"{part.file} states {name}, which is no field")
 
 
+def _check_items(draft: Draft) -> None:
+    """Complain about named items that state none of the figures a total is made of."""
+    wanted: dict[str, list[str]] = {}
+    for total in draft.kind.totals.values():
+        group, _, name = total.of.split(".")
+        wanted.setdefault(group, []).append(name)
+    for group, names in wanted.items():
+        for item, entry in section(draft.root, group).entries.items():
+            stated = entry.value.entries if isinstance(entry.value, MappingNode) else names
+            if not any(name in stated for name in names):
+                draft.complain(f"{group}.{item}", f"state {' or '.join(names)}")
+
+
 def _stated(draft: Draft, path: str) -> Node | None:
     """Return the node that states a field: the spec's own, or its part's."""
     component, _, name = path.partition(".")
@@ -154,6 +191,8 @@ def _read_stated(draft: Draft, one: Field) -> bool:
     if node is not None:
         try:
             _READERS[one.role](draft, one, node)
+        except _Misread as error:
+            draft.complain(one.path, str(error), error.node)
         except QuantityError as error:
             draft.complain(one.path, str(error), node)
     return node is not None
@@ -249,12 +288,14 @@ def _say_middle(draft: Draft, one: Field, stated: Range) -> None:
 
 def _ends(node: MappingNode, one: Field) -> dict[str, float]:
     """Return the stated ends of a range written as a mapping."""
-    texts = {key: entry.value for key, entry in node.entries.items()}
-    return {
-        end: quantity.parse(scalar.text, one.unit, code=one.codes)
-        for end, scalar in texts.items()
-        if end in ("min", "nom", "max") and isinstance(scalar, Scalar)
-    }
+    ends = {}
+    for end, entry in node.entries.items():
+        if end in ("min", "nom", "max") and isinstance(entry.value, Scalar):
+            try:
+                ends[end] = quantity.parse(entry.value.text, one.unit, code=one.codes)
+            except QuantityError as error:
+                raise _Misread(str(error), entry.value) from error
+    return ends
 
 
 def _is_ratio(node: Node) -> bool:

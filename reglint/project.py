@@ -9,7 +9,7 @@ from functools import cache
 from pathlib import Path
 
 from reglint.document import read
-from reglint.draft import read_spec
+from reglint.draft import Context, read_spec
 from reglint.errors import UsageError
 from reglint.files import Folder, read_bytes
 from reglint.finding import Run
@@ -123,10 +123,9 @@ class Project:
         if kind is None:
             found.append(_no_kind(document, node, name, book))
             return None
-        wrong = complaints(document.root, home.schema(kind))
-        spec, unread = read_spec(document, kind, book.part, shown, home.settings.derating)
-        said = {each.span for each in wrong}
-        wrong += [each for each in unread if each.span not in said]
+        unfit = complaints(document.root, home.schema(kind))
+        context = Context(shown, home.settings.derating, book.part)
+        spec, wrong = read_spec(document, kind, context, unfit)
         policy = book.policy(name := self.derating or spec.derating) if spec else None
         if spec and policy is None:
             known = book.policy_names()
@@ -137,7 +136,7 @@ class Project:
                     f" (known: {', '.join(known)})",
                 )
             )
-        found += sorted(wrong, key=lambda each: each.span)
+        found += wrong
         if wrong or spec is None or policy is None:
             return None
         return Case(spec, book.circuit(kind, policy, spec.styles), book.rules(kind))

@@ -21,8 +21,8 @@ _PREFIXES: Mapping[str, int] = {
     "p": -12,
     "n": -9,
     "u": -6,
-    "µ": -6,  # micro sign
-    "μ": -6,  # Greek mu
+    "\u00b5": -6,  # micro sign
+    "\u03bc": -6,  # Greek mu
     "m": -3,
     "k": 3,
     "M": 6,
@@ -42,7 +42,7 @@ _UNITS: Mapping[str, tuple[Dimension, str, str]] = {
     "s": (dimension.SECOND, "a time", "pnuµμm"),
     "K": (KELVIN, "a temperature difference", "m"),
 }
-_OHM_SIGNS = ("Ω", "Ω")  # Greek omega, and the ohm sign of old character sets
+_OHM_SIGNS = ("\u03a9", "\u2126")  # Greek omega, and the ohm sign of old character sets
 _CELSIUS = ("degC", "°C")
 #: Plain numbers by another name, and the power of ten each stands for.
 _RATIOS: Mapping[str, int] = {"1": 0, "%": -2, "ppm": -6}
@@ -53,7 +53,7 @@ _MOST_DIGITS = 40
 _NUMBER = r"[-−+]?(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][-−+]?[0-9]+)?"
 _QUANTITY = re.compile(rf"({_NUMBER})[ ]?([^ 0-9.+−-][^ ]*|1/[^ ]+)?")
 _LITERAL = re.compile(r"(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][-+]?[0-9]+)?(?![\w.])")
-_UNIT_WORD = re.compile(r" ?([A-Za-zΩΩµμ°%]+(?:/[A-Za-z°]+)?)(?![\w.(])")
+_UNIT_WORD = re.compile(r" ?([A-Za-z\u03a9\u2126µμ°%]+(?:/[A-Za-z°]+)?)(?![\w.(])")
 _SYMMETRIC = re.compile(r"(.+?) ?(?:±|\+/-|\+-) ?(.+)")
 _UNEVEN = re.compile(rf"(.+?) \+ ?({_NUMBER})( ?[^ 0-9/]+)? ?/ ?[-−] ?({_NUMBER} ?[^ 0-9]+)")
 _CODE = re.compile(r"([0-9]*)([RKkMGTpnuµμmF])([0-9]*)")
@@ -297,7 +297,7 @@ def literal_at(text: str, position: int) -> tuple[float, Unit, int] | None:
     word = _UNIT_WORD.match(text, found.end())
     if word is None or not _is_unit(word[1]):
         # "2 V/x.y" is two volts divided by a name: try the word before the stroke alone.
-        word = re.compile(r" ?([A-Za-zΩΩµμ°%]+)(?![\w.(])").match(text, found.end())
+        word = re.compile(r" ?([A-Za-z\u03a9\u2126µμ°%]+)(?![\w.(])").match(text, found.end())
     if word is None or not _is_unit(word[1]):
         return _value(found[0], unit("1")), unit("1"), found.end()
     return _value(found[0], unit(word[1])), unit(word[1]), word.end()

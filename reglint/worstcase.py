@@ -147,9 +147,9 @@ def climb(box: Box, measure: Measure, start: Worst) -> Worst:
 def _promising(box: Box, measure: Measure, best: Worst) -> npt.NDArray[np.intp]:
     """Return the columns along which some spec gets worse, or lies inside its range."""
     measured = at(box, measure, lines_through(box, best.point))
-    better = improves(measured, best.value[:, None]).any(axis=0)
+    better = np.any(improves(measured, best.value[:, None]), axis=0)
     moving = _moving(box)
-    inside = ((best.point > box.low) & (best.point < box.high)).any(axis=0)[moving]
+    inside = np.any((best.point > box.low) & (best.point < box.high), axis=0)[moving]
     return moving[better.reshape(len(moving), -1).any(axis=1) | inside]
 
 
