@@ -9,13 +9,14 @@ from functools import cache
 from pathlib import Path
 
 from reglint.document import read
-from reglint.draft import Context, read_spec
+from reglint.draft import Context
 from reglint.errors import UsageError
 from reglint.files import Folder, read_bytes
 from reglint.finding import Run
 from reglint.judge import Case, Wanted, judge
 from reglint.kind import Kind
 from reglint.nearest import hint
+from reglint.reader import read_spec
 from reglint.rulebook import Rulebook
 from reglint.schema import Schema, complaints
 from reglint.settings import NAME, Settings, read_settings, root_above

@@ -150,7 +150,9 @@ def _promising(box: Box, measure: Measure, best: Worst) -> npt.NDArray[np.intp]:
     better = np.any(improves(measured, best.value[:, None]), axis=0)
     moving = _moving(box)
     inside = np.any((best.point > box.low) & (best.point < box.high), axis=0)[moving]
-    return moving[better.reshape(len(moving), -1).any(axis=1) | inside]
+    lines = better.reshape(len(moving), len(_SCREEN))
+    chosen: npt.NDArray[np.intp] = moving[np.any(lines, axis=1) | inside]
+    return chosen
 
 
 def _along(box: Box, measure: Measure, start: Worst, column: int) -> Worst:

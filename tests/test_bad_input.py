@@ -22,6 +22,9 @@ zener: {part: 1N4733A, minimum_current: 5 mA, tempco: {min: -1.5 mV/K, max: 1.5 
 """
 
 
+UNMATCHED = "the waiver of prefered-value matches nothing: there is no such rule"
+
+
 @pytest.fixture
 def folder(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
     """Return a working folder with one sound spec in it."""
@@ -111,8 +114,7 @@ def test_a_regulator_that_never_regulates_is_a_finding(folder: Path) -> None:
     [
         (
             "prefered-value: {reason: r, approved_by: a, until: 2027-01-01}",
-            "the waiver of prefered-value matches nothing: there is no such rule;"
-            " the nearest known one is preferred-value",
+            f"{UNMATCHED}; the nearest known one is preferred-value",
         ),
         (
             "preferred-value: {reason: r, approved_by: a, until: 2026-11-30}",
