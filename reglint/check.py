@@ -68,7 +68,7 @@ def _quantity(one: Quantity, names: Names) -> Iterator[Complaint]:
         yield from _formula(one.formula, names, wanted)
     if one.root is not None:
         yield from _formula(one.root.falling, names)
-        for end in (one.root.start, one.root.end, one.root.off):
+        for end in (one.root.start, one.root.end, one.root.otherwise):
             yield from _formula(end, names, wanted)
 
 

@@ -102,7 +102,7 @@ def _formulas(quantity: Quantity) -> Iterator[Formula]:
         yield quantity.formula
     if quantity.root is not None:
         root = quantity.root
-        yield from (root.falling, root.start, root.end, root.off)
+        yield from (root.falling, root.start, root.end, root.otherwise)
     yield from quantity.given.values()
 
 

@@ -82,7 +82,7 @@ class Root:
     start: Formula
     end: Formula
     #: The value where ``falling`` is not positive at the start already.
-    off: Formula
+    otherwise: Formula
 
 
 @dataclass(frozen=True, slots=True)
@@ -260,7 +260,7 @@ def _read_root(node: MappingNode, statements: Statements) -> Root:
         falling=statements.formula(node, "falling"),
         start=statements.formula(node, "from"),
         end=statements.formula(node, "to"),
-        off=statements.formula(node, "off"),
+        otherwise=statements.formula(node, "otherwise"),
     )
 
 

@@ -111,7 +111,7 @@ class Equation(Generic[T]):
     def ends(self) -> tuple[T, T, T]:
         """Return the start and end of the search, and the value when the unknown is off."""
         scope, root = self.scope, self.root
-        return scope.of(root.start), scope.of(root.end), scope.of(root.off)
+        return scope.of(root.start), scope.of(root.end), scope.of(root.otherwise)
 
     def mapped(self, arithmetic: Arithmetic[U], convert: Callable[[T], U]) -> "Equation[U]":
         """Return the equation in another kind of number."""

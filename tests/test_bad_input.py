@@ -228,7 +228,7 @@ quantities:
   odd.voltage:
     unit: V
     says: Never zero.
-    solve: {falling: supply.voltage + 1 V - 0 * odd.voltage, from: 0 V, to: 9 V, off: 0 V}
+    solve: {falling: supply.voltage + 1 V - 0 * odd.voltage, from: 0 V, to: 9 V, otherwise: 0 V}
 conditions:
   loaded: {says: All.}
 sample: {}

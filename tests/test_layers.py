@@ -26,6 +26,7 @@ LAYERS = [
     ["finding", "shares", "extent", "ruling", "waiver", "judge"],
     ["project", "sheet", "explain", "catalogue", "output", "reports"],
     ["cli"],
+    ["__main__"],
 ]
 RANK = {name: rank for rank, names in enumerate(LAYERS) for name in names}
 DOORWAYS = {"yaml": "document", "jsonschema": "schema", "quantiphy": "quantity", "click": "cli"}

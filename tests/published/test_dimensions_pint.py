@@ -88,7 +88,7 @@ def test_a_formula_has_its_declared_unit(circuit: Circuit, quantity: Quantity) -
     formulas = [quantity.formula] if quantity.formula else []
     if quantity.root:
         evaluate(quantity.root.falling.root, lambda n: named(circuit, n), PINT)
-        formulas += [quantity.root.start, quantity.root.end, quantity.root.off]
+        formulas += [quantity.root.start, quantity.root.end, quantity.root.otherwise]
     for formula in formulas:
         found = evaluate(formula.root, lambda n: named(circuit, n), PINT)
         assert (1.0 * found).check(of(unit(quantity.unit).dimension).dimensionality)

@@ -1,0 +1,5 @@
+"""Runs the command line: ``python -m reglint``."""
+
+from reglint.cli import main
+
+main()
