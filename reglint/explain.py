@@ -108,7 +108,8 @@ def _quantity(quantity: Quantity, kind: Kind) -> Iterator[str]:
     if root := quantity.root:
         yield _said("is where", f"{root.falling.text} falls through zero")
         yield _said("between", f"{root.start.text}, and {root.end.text}")
-        yield _said("otherwise", f"{root.otherwise.text} where it is not positive at the start already")
+        what = f"{root.otherwise.text}, where it is not positive at the start"
+        yield _said("otherwise", what)
     reach = without_policy(kind).reach(quantity.path)
     yield _said(
         "rests on", ", ".join(sorted(name for name in reach if name in kind.stated_names()))

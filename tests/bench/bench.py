@@ -28,6 +28,7 @@ import threading
 import time
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 from math import log
 from pathlib import Path
 from random import Random
@@ -51,7 +52,6 @@ TARGETS = {(1, "wall"): 1.25, (2_000, "wall"): 2.0, (10_000, "peak"): 1.5}
 
 def floor(folder: str, schema: str) -> None:
     """Compose and validate every spec of a folder; sound specs have no errors."""
-    import json  # noqa: PLC0415
     import pathlib  # noqa: PLC0415
 
     import numpy as np  # noqa: F401, PLC0415
@@ -74,8 +74,6 @@ def floor(folder: str, schema: str) -> None:
 
 def reglint(*arguments: str) -> None:
     """Run the command line as its console script does."""
-    import sys  # noqa: PLC0415
-
     from reglint.cli import main  # noqa: PLC0415
 
     sys.argv = ["reglint", *arguments]
@@ -84,11 +82,10 @@ def reglint(*arguments: str) -> None:
 
 def stages(folder: str) -> None:
     """Print the seconds of reading, analysis and report, taken apart inside one process."""
-    import datetime  # noqa: PLC0415
-    import json  # noqa: PLC0415
     import pathlib  # noqa: PLC0415
     import sys  # noqa: PLC0415
-    import time  # noqa: PLC0415
+    from datetime import date  # noqa: PLC0415
+    from itertools import pairwise  # noqa: PLC0415
 
     from reglint import reports  # noqa: PLC0415
     from reglint.finding import Run  # noqa: PLC0415
@@ -101,11 +98,11 @@ def stages(folder: str) -> None:
     ticks = [time.perf_counter()]
     cases = [case for path in paths for case in project.read(path)[0]]
     ticks.append(time.perf_counter())
-    verdicts = judge(cases, Wanted(datetime.date(2026, 12, 1)))
+    verdicts = judge(cases, Wanted(date(2026, 12, 1)))
     ticks.append(time.perf_counter())
     reports.renderer("text")(Run(tuple(verdicts), ()), reports.Options())
     ticks.append(time.perf_counter())
-    json.dump([end - start for start, end in zip(ticks, ticks[1:], strict=False)], sys.stdout)
+    json.dump([end - start for start, end in pairwise(ticks)], sys.stdout)
 
 
 def sampling(ranges: str, least_current: str, most_power: str, seconds: str) -> None:
@@ -114,9 +111,7 @@ def sampling(ranges: str, least_current: str, most_power: str, seconds: str) -> 
     The circuit's equations stand here a second time: node, soft knee and self-heating,
     solved by Newton's method in the logarithm of the Zener current.
     """
-    import json  # noqa: PLC0415
     import sys  # noqa: PLC0415
-    import time  # noqa: PLC0415
 
     import numpy as np  # noqa: PLC0415
 
@@ -168,9 +163,9 @@ PARTS = {
     "1N4740A": (10.0, 25.0, 7.0, 0.25, 700.0),
 }
 #: Values of one decade by tolerance in percent: IEC 60063, E24 and E96.
+E24 = "1 1.1 1.2 1.3 1.5 1.6 1.8 2 2.2 2.4 2.7 3 3.3 3.6 3.9 4.3 4.7 5.1 5.6 6.2 6.8 7.5 8.2 9.1"
 PREFERRED = {
-    5: [1.0, 1.1, 1.2, 1.3, 1.5, 1.6, 1.8, 2.0, 2.2, 2.4, 2.7, 3.0]
-    + [3.3, 3.6, 3.9, 4.3, 4.7, 5.1, 5.6, 6.2, 6.8, 7.5, 8.2, 9.1],
+    5: [float(digits) for digits in E24.split()],
     1: [round(10 ** (step / 96), 2) for step in range(96)],
 }
 LOAD_NAMES = ("comparator", "probe", "gauge", "divider", "buzzer", "lamp", "logger", "relay")
@@ -260,3 +255,220 @@ def spec(rng: Random, index: int) -> str:
         *(["derating: half-power"] if rng.random() < 0.15 else []),
     ]
     return "\n".join(lines) + "\n"
+
+
+def write_specs(count: int, folder: Path) -> None:
+    """Write so many specs into a folder, one or several to a file."""
+    folder.mkdir()
+    rng, to_a_file = Random(SEED), DOCUMENTS if count >= MANY else 1
+    specs = [spec(rng, index) for index in range(count)]
+    for start in range(0, count, to_a_file):
+        text = "---\n".join(specs[start : start + to_a_file])
+        (folder / f"{start:05}.reg.yaml").write_text(text, encoding="utf-8")
+
+
+# --- measuring ---
+
+
+@dataclass(frozen=True, slots=True)
+class Cost:
+    """What one program took as a whole process, and what it wrote."""
+
+    #: Seconds.
+    wall: float
+    #: Seconds of processor, user and system.
+    cpu: float
+    #: Largest resident memory in kB (Linux).
+    peak: float
+    output: str
+
+
+Program = Callable[[], Cost]
+
+
+def run(program: Callable[..., None], *arguments: str, accepted: tuple[int, ...] = (0,)) -> Cost:
+    """Run a program in a fresh interpreter; end it, and the benchmark, at its time limit."""
+    before, call = "import json, sys, time\n", f"\n{program.__name__}(*sys.argv[1:])\n"
+    command = [sys.executable, "-c", before + inspect.getsource(program) + call, *arguments]
+    paths = os.pathsep.join(filter(None, (str(ROOT), os.environ.get("PYTHONPATH"))))
+    with tempfile.TemporaryFile("w+", encoding="utf-8") as output:
+        start = time.perf_counter()
+        process = subprocess.Popen(command, stdout=output, env={**os.environ, "PYTHONPATH": paths})
+        timer = threading.Timer(LIMIT, process.kill)
+        timer.start()
+        _, status, used = os.wait4(process.pid, 0)
+        wall = time.perf_counter() - start
+        timer.cancel()
+        process.returncode = os.waitstatus_to_exitcode(status)
+        if process.returncode not in accepted:
+            raise SystemExit(f"{program.__name__} {arguments}: status {process.returncode}")
+        output.seek(0)
+        return Cost(wall, used.ru_utime + used.ru_stime, used.ru_maxrss, output.read())
+
+
+def in_turns(one: Program, other: Program, pairs: int) -> list[tuple[Cost, Cost]]:
+    """Run two programs in turns, as often as the budget allows; the first pair warms up."""
+    begun = time.perf_counter()
+    found = [(one(), other())]
+    if time.perf_counter() - begun < BUDGET / 3:
+        found = []
+    while len(found) < pairs and (not found or time.perf_counter() - begun < BUDGET):
+        found.append((one(), other()))
+    return found
+
+
+def median(costs: Sequence[Cost], measure: str) -> float:
+    """Return the median of one measure."""
+    return statistics.median(getattr(each, measure) for each in costs)
+
+
+# --- the table ---
+
+
+def say(*columns: str) -> None:
+    """Print one line of the table at once: a long run is watched."""
+    widths = (34, 11, 11, 8, 13, 8)
+    cells = (f"{cell:>{width}}" for cell, width in zip(columns[1:], widths[1:], strict=False))
+    sys.stdout.write(f"{columns[0]:<{widths[0]}}{''.join(cells)}".rstrip() + "\n")
+    sys.stdout.flush()
+
+
+def shown(value: float, measure: str) -> str:
+    """Return an amount with its unit."""
+    if measure == "peak":
+        return f"{value / 1024:.0f} MB"
+    return f"{value * 1e3:.0f} ms" if value < 1.0 else f"{value:.1f} s"
+
+
+def compare(title: str, pairs: list[tuple[Cost, Cost]], measure: str, target: float = 0.0) -> None:
+    """Print one line: both medians, and the paired ratios."""
+    ratios = [getattr(ours, measure) / getattr(other, measure) for ours, other in pairs]
+    medians = (shown(median(costs, measure), measure) for costs in zip(*pairs, strict=True))
+    extremes = f"{min(ratios):.2f}-{max(ratios):.2f}"
+    wanted = f"<= {target:g}" if target else ""
+    say(title, *medians, f"{statistics.median(ratios):.2f}", extremes, wanted)
+
+
+def growth(costs: dict[int, list[tuple[Cost, Cost]]]) -> None:
+    """Print how processor time grows: the slope on log-log paper, one spec's cost taken off."""
+    sizes = [size for size in costs if size > 1]
+    for few, many in pairwise(sizes):
+        slopes = []
+        for side in (0, 1):
+            start, *ends = (
+                median([pair[side] for pair in costs[n]], "cpu") for n in (1, few, many)
+            )
+            slopes.append(log((ends[1] - start) / (ends[0] - start)) / log((many - 1) / (few - 1)))
+        say(f"growth exponent, {few:,} to {many:,}", *(f"{slope:.2f}" for slope in slopes))
+
+
+def whole_processes(home: Path, *, quick: bool) -> dict[int, list[tuple[Cost, Cost]]]:
+    """Compare the check of each number of specs with the floor, and print it."""
+    schema = str(home / "schema.json")
+    run(reglint, "schema", KIND, "--out", schema)
+    costs = {}
+    for count, repeats in SIZES.items():
+        if not repeats[quick]:
+            continue
+        folder = home / str(count)
+        write_specs(count, folder)
+        path = str(folder / "00000.reg.yaml" if count == 1 else folder)
+
+        def base(folder: str = str(folder)) -> Cost:
+            return run(floor, folder, schema)
+
+        def ours(path: str = path) -> Cost:
+            return run(reglint, "check", path, accepted=(0, 1))
+
+        if count == 1:
+            starts = in_turns(lambda: run(reglint, "--version"), base, repeats[quick])
+            compare("reglint --version, wall", starts, "wall")
+        costs[count] = in_turns(ours, base, repeats[quick])
+        name = f"{count:,} spec{'s' if count > 1 else ''}"
+        for measure, words in (("wall", "wall"), ("cpu", "processor"), ("peak", "peak memory")):
+            title = f"{name}, {words} ({len(costs[count])} pairs)"
+            compare(title, costs[count], measure, TARGETS.get((count, measure), 0.0))
+    return costs
+
+
+def inside(folder: Path) -> None:
+    """Print analysis against reading, taken apart in one process."""
+    runs = [json.loads(run(stages, str(folder)).output) for _ in range(3)]
+    reading, analysis, report = (statistics.median(each) for each in zip(*runs, strict=True))
+    ratios = [each[1] / each[0] for each in runs]
+    count = f"{int(folder.name):,} specs"
+    figures = (shown(analysis, "wall"), shown(reading, "wall"), f"{statistics.median(ratios):.2f}")
+    say(f"{count}, analysis / reading", *figures, f"{min(ratios):.2f}-{max(ratios):.2f}")
+    say(f"{count}, report / reading", shown(report, "wall"), "", f"{report / reading:.2f}")
+
+
+#: The regulator that is sampled: everything that varies, and what does not.
+SAMPLED = {
+    "v_s": (10.5, 14.4),
+    "r": (470 * (1 - 0.05 - 35e-4), 470 * (1 + 0.05 + 35e-4)),  # 5 %, 100 ppm/K over 35 K
+    "v_z": (5.1 * 0.95, 5.1 * 1.05),
+    "z": (0.0, 7.0),
+    "s": (-1.5e-3, 1.5e-3),
+    "t_a": (-10.0, 60.0),
+    "i_1": (0.4e-3, 1.1e-3),
+    "i_2": (0.0, 3e-3),
+    "i_zt": 49e-3,
+    "i_zk": 1e-3,
+    "z_zk": 550.0,
+    "r_th": 170.0,
+}
+SAMPLED_SPEC = """\
+format: 1
+kind: zener-shunt
+name: valve-sense
+supply: {voltage: {min: 10.5 V, nom: 12 V, max: 14.4 V}}
+output: {voltage: {min: 3.5 V, max: 5.8 V}}
+loads:
+  comparator: {current: {min: 0.4 mA, nom: 0.7 mA, max: 1.1 mA}}
+  probe: {current: {min: 0 mA, max: 3 mA}}
+ambient: {min: -10 °C, nom: 25 °C, max: 60 °C}
+series_resistor: {resistance: 470 ohm ± 5 %, power_rating: 0.5 W, tempco: 100 ppm/K}
+zener:
+  {part: 1N4733A, minimum_current: 2 mA, tempco: {min: -1.5 mV/K, max: 1.5 mV/K}}
+"""
+
+
+def against_sampling(home: Path, *, quick: bool) -> None:
+    """Print what random sampling takes to come within 1 % of two bounds of one spec."""
+    path = home / "sampled.reg.yaml"
+    path.write_text(SAMPLED_SPEC, encoding="utf-8")
+    ours = run(reglint, "check", str(path), "--report", "json", accepted=(0, 1))
+    known = json.loads(ours.output)["specs"][0]["quantities"]
+    bounds = (known["zener.current"]["min"], known["zener.power@no_load"]["max"])
+    limit = SAMPLING[quick]
+    sampled = run(sampling, json.dumps(SAMPLED), *(repr(each) for each in bounds), str(limit))
+    found = json.loads(sampled.output)
+    say(
+        "sampling 1 spec to 1 %, wall",
+        shown(ours.wall, "wall"),
+        shown(sampled.wall, "wall"),
+        f"{ours.wall / sampled.wall:.2f}",
+    )
+    for name, bound in zip(("current", "power"), ("least current", "greatest power"), strict=True):
+        samples, seconds = found["reached"].get(name, found["all"])
+        reached = "reached" if name in found["reached"] else "not reached"
+        short = f"at the end {found['off'][name]:.1%} short"
+        say(f"  {bound}: {reached} after {samples:,} samples in {seconds:.1f} s; {short}")
+
+
+def main() -> None:
+    """Print the table."""
+    parser = argparse.ArgumentParser(description=(__doc__ or "").partition("\n")[0])
+    parser.add_argument("--quick", action="store_true", help="fewer runs, and no 10,000 specs")
+    quick = parser.parse_args().quick
+    say("measure", "reglint", "floor", "ratio", "min-max", "to reach")
+    with tempfile.TemporaryDirectory() as folder:
+        home = Path(folder)
+        costs = whole_processes(home, quick=quick)
+        growth(costs)
+        inside(home / "2000")
+        against_sampling(home, quick=quick)
+
+
+if __name__ == "__main__":
+    main()
