@@ -75,7 +75,7 @@ def box_of(
     numbers: Mapping[str, Array],
 ) -> Box:
     """Build the box of specs of one circuit; ``numbers`` come from `numbers_of`."""
-    known = circuit.kind.stated_names()
+    known = circuit.kind.stated_names
     swept = sorted({name for spec in specs for name in spec.swept if name in known})
     ends = np.array(
         [[ends_of(spec.swept.get(name), condition) for name in swept] for spec in specs]
@@ -99,7 +99,7 @@ def box_of(
 def numbers_of(circuit: Circuit, specs: Sequence[Spec]) -> dict[str, Array]:
     """Return what a batch does not sweep, each of shape (s, 1); NaN where a spec states none."""
     swept = {name for spec in specs for name in spec.swept}
-    names = (circuit.kind.stated_names().keys() | circuit.not_covered.keys()) - swept
+    names = (circuit.kind.stated_names.keys() | circuit.not_covered.keys()) - swept
     return {name: np.array([[spec.numbers.get(name, np.nan)] for spec in specs]) for name in names}
 
 

@@ -22,7 +22,7 @@ def names_of(kind: Kind) -> Names:
     units = {path: each.unit for path, each in kind.quantities.items()}
     for component in kind.components.values():
         units |= {f"{component.name}.{key}": unit for key, unit in component.allowances.items()}
-    return {**kind.stated_names(), **{n: quantity.unit(u).dimension for n, u in units.items()}}
+    return {**kind.stated_names, **{n: quantity.unit(u).dimension for n, u in units.items()}}
 
 
 def check_kind(kind: Kind) -> Iterator[Complaint]:
@@ -35,7 +35,7 @@ def check_kind(kind: Kind) -> Iterator[Complaint]:
             complaints += _formula(formula, names, names.get(name))
     for field in kind.fields.values():
         for formula in field.otherwise:
-            complaints += _formula(formula, kind.stated_names(), names[field.path])
+            complaints += _formula(formula, kind.stated_names, names[field.path])
     yield from complaints or _loops(circuit, names)
 
 

@@ -73,7 +73,7 @@ def _allowed(
 ) -> Quantity:
     """Return an allowance in the kind's own names, its style's figures put in."""
     figures = rows.styles.get(rows.style(style), {})
-    own = kind.stated_names().keys() | kind.quantities.keys() | component.paths()
+    own = kind.stated_names.keys() | kind.quantities.keys() | component.paths()
 
     def in_kind(name: str) -> str:
         figure = figures.get(name.removeprefix("style."))

@@ -111,9 +111,7 @@ def _quantity(quantity: Quantity, kind: Kind) -> Iterator[str]:
         what = f"{root.otherwise.text}, where it is not positive at the start"
         yield _said("otherwise", what)
     reach = without_policy(kind).reach(quantity.path)
-    yield _said(
-        "rests on", ", ".join(sorted(name for name in reach if name in kind.stated_names()))
-    )
+    yield _said("rests on", ", ".join(sorted(name for name in reach if name in kind.stated_names)))
     yield _said("source", kind.source)
 
 

@@ -49,13 +49,11 @@ def judge(cases: Sequence[Case], wanted: Wanted) -> list[Verdict]:
 
 
 def _batches(cases: Sequence[Case]) -> Iterable[list[int]]:
-    """Group cases of one circuit, rules and set of varying names: they become one array."""
+    """Group cases of one circuit, rules and set of swept names: they become one array."""
     batches = defaultdict(list)
     for row, case in enumerate(cases):
-        varying = frozenset(
-            name for name, terms in case.spec.swept.items() if any(t.low != t.high for t in terms)
-        )
-        batches[id(case.circuit), id(case.rules), varying].append(row)
+        swept = case.circuit.kind.stated_names.keys() & case.spec.swept.keys()
+        batches[id(case.circuit), id(case.rules), frozenset(swept)].append(row)
     return batches.values()
 
 
@@ -147,7 +145,8 @@ def _judged(
         yield row, ruling.bare_pass(rule)
     if unclear:
         part = box.take(unclear)
-        proven = prove(part, Margin(rule), rule.warn_margin)
+        fine = wanted.everything or wanted.extents
+        proven = prove(part, Margin(rule), rule.warn_margin, fine=fine)
         points = _worst_points(part, rule, proven)
         yield from zip(
             unclear,

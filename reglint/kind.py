@@ -3,6 +3,7 @@
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from dataclasses import field as dataclass_field
+from functools import cached_property
 from typing import TypeVar
 
 from reglint import quantity
@@ -126,7 +127,7 @@ class Component:
         return frozenset(f"{self.name}.{allowance}" for allowance in self.allowances)
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Kind:
     """A kind of regulator, as its ``kind.yaml`` states it."""
 
@@ -143,8 +144,9 @@ class Kind:
     sample: MappingNode
     file: str
 
+    @cached_property
     def stated_names(self) -> Mapping[str, Dimension]:
-        """Return every name a spec gives a value to, with its dimension."""
+        """Every name a spec gives a value to, with its dimension."""
         names: dict[str, Dimension] = {}
         for field in self.fields.values():
             if "*" not in field.path:

@@ -23,11 +23,11 @@ Array: TypeAlias = npt.NDArray[np.float64]
 
 #: How far the bound may stay below the worst point: a fraction of the limit, for margins.
 TOLERANCE = 1e-3
-#: Rounds of halving in which that is tried; then a bound that decides is good enough.
+#: Rounds of halving in which that is tried, if wanted; then a bound that decides will do.
 _FINE_ROUNDS = 5
 #: Rounds, and pieces of one spec's box, before the proof is given up.
-_MOST_ROUNDS = 30
-_MOST_PIECES = 400
+_MOST_ROUNDS = 14
+_MOST_PIECES = 128
 #: Boxes whose gradients are evaluated at once.
 _AT_ONCE = 1 << 12
 
@@ -75,13 +75,14 @@ def _look(box: Box, parts: Sequence[tuple[Array, Partials]]) -> Look:
     return Look(narrowed(box, (low, high)), bound)
 
 
-def prove(box: Box, measure: Measure, enough: float) -> Proven:
+def prove(box: Box, measure: Measure, enough: float, *, fine: bool) -> Proven:
     """Return the worst case of a measure over each spec's narrowed box, searched and proven.
 
-    ``enough`` is the value that a proof need not go beyond.
+    ``enough`` is the value that a proof need not go beyond; ``fine`` asks for bounds close
+    to the worst points also where less would decide.
     """
     with np.errstate(all="ignore"):
-        return _proven(box, measure, enough)
+        return _proven(box, measure, enough, _FINE_ROUNDS if fine else 0)
 
 
 def _gradients(box: Box) -> Values[Gradient]:
@@ -104,7 +105,7 @@ def _partials(measured: Gradient, box: Box) -> Partials:
     return low, high
 
 
-def _proven(box: Box, measure: Measure, enough: float) -> Proven:
+def _proven(box: Box, measure: Measure, enough: float, fine_rounds: int) -> Proven:
     found = search(box, measure)
     bound = np.full(len(box.specs), np.inf)
     ranges = box.high - box.low
@@ -113,7 +114,7 @@ def _proven(box: Box, measure: Measure, enough: float) -> Proven:
         ((least, partials),) = _lower_bounds(pieces, [measure])
         points = (pieces.low == pieces.high).all(axis=1)
         found = _with_points(found, pieces, owner, measure, points & (least < found.value[owner]))
-        target = _target(found.value, enough if turn >= _FINE_ROUNDS else np.inf)
+        target = _target(found.value, enough if turn >= fine_rounds else np.inf)
         settled = points | (least >= target[owner]) | _crowded(owner, len(bound))
         np.minimum.at(bound, owner[settled], least[settled])
         rows = np.flatnonzero(~settled)

@@ -10,11 +10,11 @@ from reglint.interval import Interval, hull, lift, where
 
 Array: TypeAlias = npt.NDArray[np.float64]
 
-#: How far from a root in the middle of its box an enclosure's ends are tried, as fractions:
-#: close by, which does for a point, and further out for a wide box.
-_CLOSE = np.array([1e-11])
+#: Where an enclosure's ends are tried, as fractions of a root in the middle of the box (and
+#: as its multiples): close by, which does for a point, and further out for a wide box.
+_CLOSE = 1.0 - np.array([1e-11])
 _FAR = np.concatenate(
-    (np.geomspace(1e-8, 1e-3, 6), np.linspace(0.005, 0.1, 8), np.linspace(0.13, 0.99, 14))
+    (1.0 - np.geomspace(1e-8, 0.01, 8), np.linspace(0.97, 0.03, 18), np.geomspace(0.01, 1e-8, 7))
 )
 
 #: A residual this small against those at the ends is rounding.
@@ -112,7 +112,7 @@ def enclosed_root(
 
 
 def _around(
-    residual: Callable[[Interval], Interval], guess: Array, start: Array, reaches: Array
+    residual: Callable[[Interval], Interval], guess: Array, start: Array, fractions: Array
 ) -> tuple[Array, Array, npt.NDArray[np.bool_]]:
     """Try points on both sides of a guess, all at once.
 
@@ -120,9 +120,12 @@ def _around(
     where it is surely negative, and for both whether there is one.
     """
     shape = np.broadcast_shapes(np.shape(guess), np.shape(start))
-    shrink = (1.0 - reaches).reshape(-1, *(1 for _ in shape))
+    shrink = fractions.reshape(-1, *(1 for _ in shape))
     trial = np.stack(
-        (np.maximum(guess * shrink, start), np.broadcast_to(guess / shrink, (len(reaches), *shape)))
+        (
+            np.maximum(guess * shrink, start),
+            np.broadcast_to(guess / shrink, (len(fractions), *shape)),
+        )
     )
     at_trial = residual(lift(trial))
     passes = np.stack((at_trial.low[0] > 0.0, at_trial.high[1] < 0.0))

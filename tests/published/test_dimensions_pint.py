@@ -75,7 +75,7 @@ def named(circuit: Circuit, name: str) -> pint.Quantity:
     """Return one of a name's declared unit."""
     if name in circuit.quantities:
         return of(unit(circuit.quantities[name].unit).dimension)
-    return of(circuit.kind.stated_names()[name])
+    return of(circuit.kind.stated_names[name])
 
 
 @pytest.mark.parametrize(
