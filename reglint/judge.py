@@ -6,11 +6,12 @@ from dataclasses import dataclass
 from datetime import date
 
 from reglint import ruling, waiver
-from reglint.box import Box, box_of, numbers_of
+from reglint.box import Box, box_of, ends_of, numbers_of
 from reglint.circuit import Circuit
 from reglint.extent import extents
 from reglint.finding import Extent, Finding, Outcome, Verdict
 from reglint.formula import Formula
+from reglint.kind import Condition
 from reglint.margin import Margin
 from reglint.proof import Look, Proven, look, prove
 from reglint.rule import Rule
@@ -155,6 +156,12 @@ def _judged(
         )
 
 
+def _varies(spec: Spec, name: str, condition: Condition) -> bool:
+    """Tell whether a name has a range in this spec, whatever others of the batch have."""
+    low, _, high = ends_of(spec.swept[name], condition)
+    return low < high
+
+
 def _side(box: Box, side: Formula, proven: Proven) -> Array:
     """Return one side of a rule at each spec's worst point."""
     return at(box, lambda scope: scope.of(side), proven.point[:, None, :])[:, 0]
@@ -174,7 +181,7 @@ def _worst_points(box: Box, rule: Rule, proven: Proven) -> Iterator[ruling.Worst
             corner={
                 name: float(value)
                 for name, value in zip(box.names, point, strict=True)
-                if name in asked
+                if name in asked and _varies(box.specs[row], name, box.condition)
             },
             shares=eaten[row],
         )
