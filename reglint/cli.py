@@ -19,16 +19,18 @@ from reglint.catalogue import described, listed
 from reglint.errors import UsageError
 from reglint.explain import explain as explain_name
 from reglint.finding import Outcome, Run
-from reglint.judge import Wanted
+from reglint.judge import Case, Wanted, judge
 from reglint.kind import Kind
 from reglint.nearest import hint
 from reglint.output import write
-from reglint.project import Home, Project
+from reglint.project import Home, Project, Supposition
 from reglint.reports import Options
 from reglint.schema import KNOWLEDGE, knowledge_schema
 from reglint.sheet import sheet as calculation
 from reglint.spec_schema import editor_schema
 from reglint.starter import starter as commented
+from reglint.window import told, trials
+from reglint.window import window as design_window
 
 F = TypeVar("F", bound=Callable[..., Any])
 
@@ -44,6 +46,19 @@ class _Today(click.ParamType):  # type: ignore[type-arg]  # its parameter is new
             return value if isinstance(value, date) else date.fromisoformat(value)
         except ValueError:
             self.fail(f"{value} is no date; write one such as 2027-06-30", param, ctx)
+
+
+class _Supposed(click.ParamType):  # type: ignore[type-arg]  # its parameter is new in click 8.2
+    name = "supposition"
+
+    def convert(self, value: Any, param: Any, ctx: Any) -> Supposition:
+        if isinstance(value, Supposition):
+            return value
+        place, equals, text = value.partition("=")
+        spec, colon, field = place.partition(":")
+        if not (equals and colon and spec and field and text):
+            self.fail(f"{value}: write NAME:FIELD=TEXT, as d1:zener.part=1N4734A", param, ctx)
+        return Supposition(spec.strip(), field.strip(), text.strip())
 
 
 @click.group(context_settings={"help_option_names": ["-h", "--help"]})
@@ -62,6 +77,14 @@ def cli() -> None:
 @click.option("--gate", type=click.Choice(_GATES), help="Outcome from which the status is 1.")
 @click.option("--derating", metavar="NAME", help="Judge every spec under this policy.")
 @click.option("--everything", is_flag=True, help="List passing rules too.")
+@click.option(
+    "--suppose",
+    "suppositions",
+    type=_Supposed(),
+    multiple=True,
+    metavar="NAME:FIELD=TEXT",
+    help="Try a value without editing the file, as NAME:zener.part=1N4734A.",
+)
 @click.option("--today", type=_Today(), help="The day waivers are judged on, as 2027-06-30.")
 @click.option("--colour/--no-colour", default=None, help="Colour, whatever the terminal says.")
 @click.pass_context
@@ -73,18 +96,28 @@ def check(
     gate: str | None,
     derating: str | None,
     everything: bool,
+    suppositions: tuple[Supposition, ...],
     today: date | None,
     colour: bool | None,
 ) -> None:
     """Check the specs that PATHS lead to; without PATHS, those below this folder."""
-    project = Project(Path.cwd(), derating)
+    project = Project(Path.cwd(), derating, suppositions)
     specs = project.specs(paths or (Path.cwd(),))
     day = today or date.today()  # noqa: DTZ011 -- a waiver ends on the reader's own day
     wanted = Wanted(day, everything, reports.wants_extents(report))
     run = project.check(specs, wanted)
+    _check_supposed(suppositions, run)
     options = Options(everything, out is None and _coloured(colour))
     write(reports.renderer(report)(run, options), out)
     context.exit(_status(run, gate or project.gate()))
+
+
+def _check_supposed(suppositions: tuple[Supposition, ...], run: Run) -> None:
+    """Refuse a supposition about a spec that is not there, unless something is unreadable."""
+    known = {verdict.spec.name for verdict in run.verdicts}
+    for each in suppositions:
+        if each.spec not in known and not run.problems:
+            raise UsageError(f"no spec is called {each.spec}{hint(each.spec, known)}")
 
 
 @cli.command()
@@ -110,12 +143,33 @@ def sheet(
     problems += project.problems()
     for problem in problems:
         click.echo(f"reglint: {problem}", err=True)
-    chosen = [case for case in cases if name in (None, case.spec.name)]
-    if name and not chosen:
-        known = ", ".join(case.spec.name for case in cases)
-        raise UsageError(f"{spec} has no spec {name} (it has: {known})")
+    chosen = _chosen(cases, name, spec)
     write("\n".join(calculation(case.spec, case.circuit) for case in chosen), out)
     context.exit(2 if problems else 0)
+
+
+@cli.command()
+@click.argument("spec", type=_PATHS)
+@click.argument("field", required=False)
+@click.option("--name", help="The spec's name, where the file holds several.")
+@click.option("--derating", metavar="NAME", help="Judge under this policy.")
+def window(spec: Path, field: str | None, name: str | None, derating: str | None) -> None:
+    """Print the standard values of FIELD at which every rule of SPEC holds.
+
+    Without FIELD, of every field that the spec's rules name for adjustment.
+    """
+    project = Project(Path.cwd(), derating)
+    cases, problems = project.read(spec)
+    if problems:
+        raise UsageError(str(problems[0]))
+    wanted = Wanted(date.today())  # noqa: DTZ011 -- a waiver ends on the reader's own day
+    for case in _chosen(cases, name, spec):
+        adjusted = {each for rule in case.rules.values() for each in rule.adjust}
+        for each in [field] if field else sorted(adjusted):
+            tried = trials(case.spec, each)
+            variants = project.variants(spec, case, each, tried.values())
+            found = design_window(case.spec, each, list(tried), judge(variants, wanted))
+            write(told(case.spec, found), None)
 
 
 @cli.command()
@@ -157,6 +211,15 @@ def parts(name: str | None) -> None:
     if isinstance(part, str):
         raise UsageError(part)
     write(described(part), None)
+
+
+def _chosen(cases: list[Case], name: str | None, path: Path) -> list[Case]:
+    """Return the cases of one name, or all where none is wanted."""
+    chosen = [case for case in cases if name in (None, case.spec.name)]
+    if name and not chosen:
+        known = ", ".join(case.spec.name for case in cases)
+        raise UsageError(f"{path} has no spec {name} (it has: {known})")
+    return chosen
 
 
 def _home() -> Home:

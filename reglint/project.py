@@ -4,7 +4,8 @@ import os
 import re
 import subprocess
 from collections.abc import Iterable, Iterator, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, replace
+from dataclasses import field as dataclass_field
 from functools import cache
 from pathlib import Path
 
@@ -23,7 +24,16 @@ from reglint.settings import NAME, Settings, read_settings, root_above
 from reglint.source import TOP, Complaint, Problem
 from reglint.spec import Spec
 from reglint.spec_schema import spec_schema
-from reglint.tree import Document, Scalar, find
+from reglint.tree import Document, Scalar, changed, find
+
+
+@dataclass(frozen=True, slots=True)
+class Supposition:
+    """A value to try without editing the file."""
+
+    spec: str
+    field: str
+    text: str
 
 
 @dataclass(slots=True)
@@ -33,7 +43,7 @@ class Home:
     settings: Settings
     rulebook: Rulebook
     problems: list[Problem]
-    schemas: dict[str, Schema] = field(default_factory=dict)
+    schemas: dict[str, Schema] = dataclass_field(default_factory=dict)
 
     def schema(self, kind: Kind) -> Schema:
         """Return the schema of a kind's specs, generated once."""
@@ -49,7 +59,9 @@ class Project:
     folder: Path
     #: Takes the place of every spec's and the settings' own policy.
     derating: str | None = None
-    homes: dict[Path, Home] = field(default_factory=dict)
+    #: Values to try instead of those in the files.
+    suppositions: tuple[Supposition, ...] = ()
+    homes: dict[Path, Home] = dataclass_field(default_factory=dict)
 
     def show(self, path: Path) -> str:
         """Return how a path is shown: relative, with ``/``."""
@@ -106,12 +118,27 @@ class Project:
             return [], [Problem(shown, TOP, data)]
         reading, home = read(data), self.home(path)
         found, cases = list(reading.complaints), []
-        for document in reading.documents:
+        for document in map(self._supposed, reading.documents):
             case = self._case(document, home, shown, found)
             if case is not None:
                 cases.append(case)
         found += _repeated([case.spec for case in cases])
         return cases, [Problem(shown, each.span, each.message) for each in found]
+
+    def _supposed(self, document: Document) -> Document:
+        """Return a document with the values to try put in."""
+        node = find(document.root, ("name",))
+        for each in self.suppositions:
+            if isinstance(node, Scalar) and node.text == each.spec:
+                document = with_value(document, each.field, each.text)
+        return document
+
+    def variants(self, path: Path, case: Case, field: str, texts: Iterable[str]) -> list[Case]:
+        """Return a spec once for each text in place of one field's; it must have been sound."""
+        home, found = self.home(path), list[Complaint]()
+        documents = (with_value(Document(case.spec.root, 1), field, text) for text in texts)
+        cases = [self._case(each, home, case.spec.file, found) for each in documents]
+        return [each for each in cases if each is not None]
 
     def _case(
         self, document: Document, home: Home, shown: str, found: list[Complaint]
@@ -166,6 +193,11 @@ class Project:
             inner = each.relative_to(home.settings.root) if _inside(each, home) else each
             if any(_matches(inner.as_posix(), glob) for glob in home.settings.specs):
                 yield each
+
+
+def with_value(document: Document, field: str, text: str) -> Document:
+    """Return a document with another text at a field's dotted path."""
+    return replace(document, root=changed(document.root, field.split("."), text))
 
 
 def _no_kind(document: Document, node: object, name: str, book: Rulebook) -> Complaint:

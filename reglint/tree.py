@@ -1,6 +1,7 @@
 """Trees of names and values, each with its place: what a YAML document is read as."""
 
 from collections.abc import Iterable
+from collections.abc import Sequence as Sequence_
 from dataclasses import dataclass
 from typing import Any, TypeAlias
 
@@ -95,6 +96,20 @@ def _step(node: Node, step: str | int) -> Entry | None:
     if isinstance(node, Sequence) and isinstance(step, int) and 0 <= step < len(node.items):
         return Entry(Scalar("", node.items[step].span, plain=True), node.items[step])
     return None
+
+
+def changed(node: Mapping, path: Sequence_[str], text: str) -> Mapping:
+    """Return a copy with one value changed or added; what is new stands where its parent does."""
+    name, *rest = path
+    old = node.entries.get(name)
+    key = old.key if old else Scalar(name, node.span, plain=True)
+    span = old.value.span if old else node.span
+    if rest:
+        inner = old.value if old and isinstance(old.value, Mapping) else Mapping({}, span)
+        value: Node = changed(inner, rest, text)
+    else:
+        value = Scalar(text, span, plain=True)
+    return Mapping({**node.entries, name: Entry(key, value)}, node.span)
 
 
 def section(node: "Mapping", name: str) -> "Mapping":

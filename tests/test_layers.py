@@ -24,7 +24,7 @@ LAYERS = [
     ["draft", "figure", "absent", "reader"],
     ["box", "worstcase", "proof", "margin"],
     ["finding", "shares", "extent", "ruling", "waiver", "judge"],
-    ["project", "sheet", "explain", "catalogue", "output", "reports"],
+    ["window", "project", "sheet", "explain", "catalogue", "output", "reports"],
     ["cli"],
     ["__main__"],
 ]
