@@ -6,7 +6,7 @@ from reglint import quantity
 from reglint.circuit import Circuit, without_policy
 from reglint.dimension import Dimension
 from reglint.errors import FormulaError
-from reglint.formula import Formula, evaluate, names_in
+from reglint.formula import Formula, Number, evaluate, names_in
 from reglint.functions import DIMENSIONS
 from reglint.kind import Kind, Quantity
 from reglint.nearest import hint
@@ -70,6 +70,9 @@ def _quantity(one: Quantity, names: Names) -> Iterator[Complaint]:
         yield from _formula(one.root.falling, names)
         for end in (one.root.start, one.root.end, one.root.otherwise):
             yield from _formula(end, names, wanted)
+        if not isinstance(one.root.otherwise.root, Number):
+            # A proof takes it that an unknown which is off stays where it is.
+            yield one.root.otherwise.complaint(FormulaError("write a constant here"))
 
 
 def _formula(

@@ -2,11 +2,14 @@
 
 Forward differentiation over intervals: for any two points of the box the function's
 difference is enclosed by the partials times the steps between them. At a kink the
-partials hold those of both sides; at a jump they hold everything.
+partials hold those of both sides (Clarke's generalised gradient); at a jump they hold
+everything. A partial of exactly zero belongs to a variable that does not matter, so it
+stays zero whatever it is multiplied with, an infinite slope included.
 """
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
+from functools import reduce
 from typing import Any, TypeAlias, Union
 
 import numpy as np
@@ -16,10 +19,16 @@ from reglint import interval
 from reglint.interval import Interval, hull, lift, where
 
 Array: TypeAlias = npt.NDArray[np.float64]
+Mask: TypeAlias = npt.NDArray[np.bool_]
 Like: TypeAlias = Union["Gradient", Interval, Array, float]
+#: Partials of one operand, and the slope of the result with that operand.
+Term: TypeAlias = tuple[Interval | None, Interval]
 
+#: Below this, doubles that differ by one differ.
+_WHOLE = 2.0**53
 _ZERO = lift(0.0)
-_EVERYTHING = Interval(np.float64(-np.inf), np.float64(np.inf))  # type: ignore[arg-type]
+_EVERYTHING = hull(-np.inf, np.inf)
+_FALLING = hull(-np.inf, 0.0)
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -33,15 +42,19 @@ class Gradient:
     #: Arrays leave mixed operations to us.
     __array_ufunc__ = None
 
+    def __bool__(self) -> bool:
+        """Refuse: a range of values may hold both."""
+        raise TypeError("a gradient is neither true nor false; compare the ends of its value")
+
     def __neg__(self) -> "Gradient":
         """Return the negative."""
-        partials = None if self.partials is None else -self.partials
-        return Gradient(-self.value, partials)
+        return Gradient(-self.value, None if self.partials is None else -self.partials)
 
     def __add__(self, other: Like) -> "Gradient":
         """Return the sum."""
         other = raised(other)
-        return Gradient(self.value + other.value, _sum(self.partials, other.partials))
+        value = self.value + other.value
+        return Gradient(value, _sum(value, self.partials, other.partials))
 
     __radd__ = __add__
 
@@ -56,17 +69,15 @@ class Gradient:
     def __mul__(self, other: Like) -> "Gradient":
         """Return the product."""
         other = raised(other)
-        return _chain(
-            self.value * other.value, (self.partials, other.value), (other.partials, self.value)
-        )
+        value = self.value * other.value
+        return _chain(value, (self.partials, other.value), (other.partials, self.value))
 
     __rmul__ = __mul__
 
     def __truediv__(self, other: Like) -> "Gradient":
         """Return the quotient."""
         other = raised(other)
-        quotient = self.value / other.value
-        inverse = 1.0 / other.value
+        quotient, inverse = self.value / other.value, 1.0 / other.value
         return _chain(quotient, (self.partials, inverse), (other.partials, -(quotient * inverse)))
 
     def __rtruediv__(self, other: Like) -> "Gradient":
@@ -74,12 +85,28 @@ class Gradient:
         return raised(other) / self
 
     def __pow__(self, exponent: Like) -> "Gradient":
-        """Return the power; through the logarithm where the exponent is no constant."""
-        if isinstance(exponent, Gradient) and exponent.partials is not None:
-            return exp(exponent * log(self))
-        power = exponent.value if isinstance(exponent, Gradient) else exponent
-        slope = lift(power) * self.value ** (power - 1.0)
-        return _chain(self.value**power, (self.partials, slope))
+        """Return the power."""
+        exponent = raised(exponent)
+        power = self.value**exponent.value
+        slope = _power_slope(self.value, exponent.value)
+        bend = power * interval.log(self.value) if exponent.partials is not None else _ZERO
+        return _chain(power, (self.partials, slope), (exponent.partials, bend))
+
+    def __rpow__(self, other: Like) -> "Gradient":
+        """Return the power."""
+        return raised(other) ** self
+
+
+def _power_slope(base: Interval, exponent: Interval) -> Interval:
+    """Enclose the slope of a power with its base; across a pole anything is possible."""
+    slope = exponent * base ** _less_one(exponent)
+    return where((exponent.low < 0.0) & (base.low < 0.0) & (base.high > 0.0), _EVERYTHING, slope)
+
+
+def _less_one(exponent: Interval) -> Interval:
+    """Subtract one; a whole exponent stays whole, as rounding outward would not leave it."""
+    whole = (exponent.low == exponent.high) & (exponent.low == np.rint(exponent.low))
+    return where(whole & (np.abs(exponent.low) < _WHOLE), exponent.low - 1.0, exponent - 1.0)
 
 
 def variable(index: int, count: int, value: Interval) -> Gradient:
@@ -94,19 +121,25 @@ def raised(value: Like) -> Gradient:
     return value if isinstance(value, Gradient) else Gradient(lift(value))
 
 
-def _sum(one: Interval | None, other: Interval | None) -> Interval | None:
-    if one is None or other is None:
-        return other if one is None else one
-    return one + other
+def _fitted(partials: Interval, value: Interval) -> Interval:
+    """Return partials with new axes behind their first, so that they broadcast with a value."""
+    missing = np.ndim(value.low) + 1 - np.ndim(partials.low)
+    if missing <= 0:
+        return partials
+    axes = (slice(None), *[None] * missing)
+    return Interval(partials.low[axes], partials.high[axes])
 
 
-def _chain(value: Interval, *terms: tuple[Interval | None, Interval | float]) -> Gradient:
+def _sum(value: Interval, *terms: Interval | None) -> Interval | None:
+    """Return the sum of what partials there are."""
+    fitted = [_fitted(each, value) for each in terms if each is not None]
+    return reduce(Interval.__add__, fitted) if fitted else None
+
+
+def _chain(value: Interval, *terms: Term) -> Gradient:
     """Return a value whose partials are the sum of inner partials times outer slopes."""
-    partials = None
-    for inner, slope in terms:
-        if inner is not None:
-            partials = _sum(partials, inner * slope)
-    return Gradient(value, partials)
+    products = [_fitted(inner, value) * slope for inner, slope in terms if inner is not None]
+    return Gradient(value, _sum(value, *products))
 
 
 def exp(value: Like) -> Gradient:
@@ -119,8 +152,8 @@ def exp(value: Like) -> Gradient:
 def log(value: Like) -> Gradient:
     """Return the logarithm."""
     value = raised(value)
-    inner = interval.maximum(value.value, _ZERO)
-    return _chain(interval.log(inner), (value.partials, 1.0 / inner))
+    result = interval.log(value.value)
+    return _chain(result, (value.partials, 1.0 / interval.maximum(value.value, 0.0)))
 
 
 def sqrt(value: Like) -> Gradient:
@@ -133,80 +166,91 @@ def sqrt(value: Like) -> Gradient:
 def absolute(value: Like) -> Gradient:
     """Return the magnitude."""
     value = raised(value)
-    inner = value.value
-    slope = Interval(np.where(inner.low >= 0.0, 1.0, -1.0), np.where(inner.high <= 0.0, -1.0, 1.0))
-    return _chain(interval.absolute(inner), (value.partials, slope))
+    negative, positive = value.value.low < 0.0, value.value.high > 0.0
+    slope = where(negative, where(positive, hull(-1.0, 1.0), -1.0), 1.0)
+    return _chain(interval.absolute(value.value), (value.partials, slope))
 
 
-def _choice(
-    take_one: npt.NDArray[np.bool_],
-    take_other: npt.NDArray[np.bool_],
-    one: Gradient,
-    other: Gradient,
-) -> Interval | None:
-    """Return the partials of whichever is surely taken, or of both where it is not sure."""
+def _choice(value: Interval, surely: tuple[Mask, Mask], one: Gradient, other: Gradient) -> Gradient:
+    """Return a value with the partials of what is surely chosen; of both where nothing is."""
     if one.partials is None and other.partials is None:
-        return None
-    first = one.partials if one.partials is not None else _ZERO
-    second = other.partials if other.partials is not None else _ZERO
-    return where(take_one, first, where(take_other, second, hull(first, second)))
+        return Gradient(value)
+    first, second = (
+        _ZERO if each.partials is None else _fitted(each.partials, value) for each in (one, other)
+    )
+    chosen = where(surely[0], first, where(surely[1], second, hull(first, second)))
+    return Gradient(value, chosen)
 
 
-def _pick(lower: bool) -> Callable[..., Gradient]:  # noqa: FBT001 -- private
-    def two(one: Gradient, other: Gradient) -> Gradient:
-        pick = interval.minimum if lower else interval.maximum
-        below = one.value.high < other.value.low
-        above = one.value.low > other.value.high
-        sure = (below, above) if lower else (above, below)
-        return Gradient(pick(one.value, other.value), _choice(*sure, one, other))
-
-    def folded(first: Like, *rest: Like) -> Gradient:
-        result = raised(first)
-        for each in rest:
-            result = two(result, raised(each))
-        return result
-
-    return folded
+def _lesser(one: Gradient, other: Gradient) -> Gradient:
+    surely = one.value.high <= other.value.low, other.value.high <= one.value.low
+    return _choice(interval.minimum(one.value, other.value), surely, one, other)
 
 
-minimum = _pick(lower=True)
-maximum = _pick(lower=False)
+def minimum(*values: Like) -> Gradient:
+    """Return the least."""
+    return reduce(_lesser, map(raised, values))
+
+
+def maximum(*values: Like) -> Gradient:
+    """Return the greatest."""
+    return -minimum(*(-raised(each) for each in values))
 
 
 def knee(ratio: Like, exponent: Like) -> Gradient:
-    """Return the knee function; its slope with x is ``x**-m``."""
+    """Return the knee function."""
     ratio, exponent = raised(ratio), raised(exponent)
-    x = interval.maximum(ratio.value, _ZERO)
-    slope = interval.exp(-exponent.value * interval.log(x))
-    return _chain(
-        interval.knee(x, exponent.value),
-        (ratio.partials, slope),
-        (exponent.partials, Interval(np.float64(-np.inf), np.float64(0.0))),  # type: ignore[arg-type]
-    )
+    logs = interval.log(ratio.value)
+    slope = interval.exp(-exponent.value * logs)
+    bend = _ZERO if exponent.partials is None else _knee_bend(logs, exponent.value)
+    value = interval.knee(ratio.value, exponent.value)
+    return _chain(value, (ratio.partials, slope), (exponent.partials, bend))
+
+
+def _knee_bend(logs: Interval, exponent: Interval) -> Interval:
+    """Enclose the slope of the knee with its exponent.
+
+    It is minus the integral of ``v exp((1-m) v)`` from 0 to ln x, and the exponential in it
+    lies between those of both ends, 1 and ``x**(1-m)``.
+    """
+    return -0.5 * logs**2.0 * hull(1.0, interval.exp((1.0 - exponent) * logs))
 
 
 def falling(value: Like, full_until: Like, zero_at: Like) -> Gradient:
-    """Return the fall from 1 to 0; its slope with x is -1/width inside and 0 outside."""
+    """Return the fall from 1 to 0: its slope with x is -1/width inside and 0 outside.
+
+    Those with the two ends lie between 0 and 1/width. A fall without width is a jump.
+    """
     value, full_until, zero_at = raised(value), raised(full_until), raised(zero_at)
     x, start, end = value.value, full_until.value, zero_at.value
     width = end - start
-    steep = -1.0 / interval.maximum(width, _ZERO)
-    slope = where(width.low > 0.0, steep, Interval(np.float64(-np.inf), np.float64(0.0)))  # type: ignore[arg-type]
-    outside = (x.high <= start.low) | (x.low >= interval.maximum(start, end).high)
+    steep = where(width.low > 0.0, -1.0 / width, _FALLING)
+    # At x = start the fall is still full, also when it is a jump: a box may begin there.
+    outside = (x.high <= start.low) | ((x.low >= end.high) & (x.low > start.high))
     inside = (x.low >= start.high) & (x.high <= end.low) & (width.low > 0.0)
-    sloped = where(outside, _ZERO, where(inside, slope, hull(slope, _ZERO)))
-    shift = Interval(np.float64(0.0), np.float64(np.inf))  # type: ignore[arg-type]
-    moved = where(outside, _ZERO, shift)
+    gentle = where(outside, 0.0, hull(steep, 0.0))
     return _chain(
         interval.falling(x, start, end),
-        (value.partials, sloped),
-        (full_until.partials, moved),
-        (zero_at.partials, moved),
+        (value.partials, where(inside, steep, gentle)),
+        (full_until.partials, -gentle),
+        (zero_at.partials, -gentle),
+    )
+
+
+def if_positive(test: Like, yes: Like, no: Like) -> Gradient:
+    """Return one of two; where the test is undecided, what moves it may make the result jump."""
+    test, yes, no = raised(test), raised(yes), raised(no)
+    value = interval.if_positive(test.value, yes.value, no.value)
+    surely = test.value.low > 0.0, test.value.high <= 0.0
+    jump = where(surely[0] | surely[1], 0.0, _EVERYTHING)
+    chosen = _choice(value, surely, yes, no)
+    return Gradient(
+        value, _sum(value, chosen.partials, _chain(value, (test.partials, jump)).partials)
     )
 
 
 def agreeing(test: Like, other: Like, value: Like) -> Gradient:
-    """Return a value, drawn closer by a form of it that agrees where the test is positive.
+    """Return a value, drawn closer by another form of it that agrees where the test is positive.
 
     There both forms enclose the same function, so its partials lie in both forms' partials.
     """
@@ -214,21 +258,8 @@ def agreeing(test: Like, other: Like, value: Like) -> Gradient:
     closer = interval.agreeing(test.value, other.value, value.value)
     if value.partials is None or other.partials is None:
         return Gradient(closer, value.partials)
-    both = interval.meet(value.partials, other.partials)
-    return Gradient(closer, where(test.value.low > 0.0, both, value.partials))
-
-
-def if_positive(test: Like, yes: Like, no: Like) -> Gradient:
-    """Return one of two; where the test is undecided the result may jump."""
-    test, yes, no = raised(test), raised(yes), raised(no)
-    value = interval.if_positive(test.value, yes.value, no.value)
-    sure_yes, sure_no = test.value.low > 0.0, test.value.high <= 0.0
-    partials = _choice(sure_yes, sure_no, yes, no)
-    if test.partials is not None:
-        nothing = test.partials * 0.0
-        jump = where(sure_yes | sure_no, nothing, nothing + _EVERYTHING)
-        partials = _sum(partials, jump)
-    return Gradient(value, partials)
+    both, own = _fitted(other.partials, closer), _fitted(value.partials, closer)
+    return Gradient(closer, interval.agreeing(test.value, both, own))
 
 
 def margin(slack: Like, scale: Like) -> Gradient:
@@ -241,25 +272,26 @@ def implicit(root: Interval, moved: Gradient, slope: Gradient, off: Interval) ->
 
     ``moved`` is f over the root's enclosure and the box, with its partials by p; ``slope``
     the same by x alone. Where f is not positive at the start (``off``) the root stays put;
-    where that is undecided it may do either.
+    where that is undecided it may do either. Where f may stand still in x all is possible.
     """
-    if moved.partials is None or slope.partials is None:
+    if moved.partials is None:
         return Gradient(root)
-    by_x = Interval(slope.partials.low[0], slope.partials.high[0])
-    free = -(moved.partials / by_x)
-    held = where(off.high <= 0.0, _ZERO, where(off.low > 0.0, free, hull(free, _ZERO)))
-    return Gradient(root, held)
+    by_p = _fitted(moved.partials, root)
+    along = slope.partials
+    by_x = _ZERO if along is None else Interval(along.low[0], along.high[0])
+    sure = (by_x.high < 0.0) | (by_x.low > 0.0)
+    free = where(sure, -(by_p / by_x), by_p * _EVERYTHING)
+    held = where(off.high <= 0.0, 0.0, hull(free, 0.0))
+    return Gradient(root, where(off.low > 0.0, free, held))
 
 
 def thin_only(function: Callable[..., Interval]) -> Callable[..., Gradient]:
-    """Return a function of constants; of variables nothing is known."""
+    """Return a function of constants; with what varies it may jump anywhere."""
 
     def constant(*arguments: Like) -> Gradient:
-        raised_all = [raised(each) for each in arguments]
-        value = function(*(each.value for each in raised_all))
-        if any(each.partials is not None for each in raised_all):
-            return Gradient(value * _EVERYTHING, _EVERYTHING)
-        return Gradient(value)
+        gradients = [raised(each) for each in arguments]
+        value = function(*(each.value for each in gradients))
+        return _chain(value, *((each.partials, _EVERYTHING) for each in gradients))
 
     return constant
 

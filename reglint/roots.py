@@ -105,7 +105,7 @@ def enclosed_root(
     falls = sure[1] | (residual(high).high <= 0.0)
     first = np.where(sure[0], first, start)
     last = np.where(sure[1], last, np.where(falls, end, np.nan))
-    inside = Interval(first, last)
+    inside = Interval(np.where(np.isnan(last), np.nan, first), last)
     at_low = residual(low)
     undecided = where(at_low.high <= 0.0, below, hull(below, inside))
     return where(at_low.low > 0.0, inside, undecided)

@@ -26,7 +26,8 @@ def shares(box: Box, measure: Measure, points: Array) -> list[tuple[Share, ...]]
         for index, (_, column, change) in enumerate(each):
             trials[row, index + 1, column] += change
     margins = at(box, measure, trials)
-    gains = np.nan_to_num(np.maximum(margins[:, 1:] - margins[:, :1], 0.0), posinf=0.0)
+    with np.errstate(invalid="ignore"):  # from minus infinity to minus infinity nothing is gained
+        gains = np.nan_to_num(np.maximum(margins[:, 1:] - margins[:, :1], 0.0), posinf=0.0)
     return [
         _ordered(spec, [path for path, _, _ in each], gain)
         for spec, each, gain in zip(box.specs, moves, gains, strict=True)

@@ -40,7 +40,13 @@ def test_rules_that_exclude_each_other_are_named(
     tmp_path: Path, monkeypatch: pytest.MonkeyPatch, sample: Callable[..., str]
 ) -> None:
     """A heavy load wants a small resistor, a small Zener a large one: no value does."""
-    changes = {"loads.gauge.current": "{min: 0 mA, max: 12 mA}", "zener.current_max": "18 mA"}
+    changes = {
+        "loads.gauge.current": "{min: 0 mA, max: 12 mA}",
+        "zener.current_max": "18 mA",
+        **dict.fromkeys(f"output.{each}_regulation" for each in ("line", "load")),
+        "output.ripple_rejection": None,
+        "output.voltage": None,
+    }
     text = sample(changes).replace('"{min: 0 mA, max: 12 mA}"', "{min: 0 mA, max: 12 mA}")
     (tmp_path / "tight.reg.yaml").write_text(text, encoding="utf-8")
     monkeypatch.chdir(tmp_path)

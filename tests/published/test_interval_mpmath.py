@@ -3,12 +3,16 @@
 mpmath (https://mpmath.org) computes its intervals at any precision; 53 bits here.
 """
 
+import operator
 from collections.abc import Callable
 from fractions import Fraction
+from typing import Any
 
 import mpmath
 import numpy as np
 import pytest
+from hypothesis import assume, given, settings
+from hypothesis import strategies as st
 
 from reglint import interval
 from reglint.interval import Interval
@@ -91,3 +95,26 @@ def test_the_knee_function_is_an_integral(exponent: float) -> None:
         found = interval.knee(np.array([x]), np.array([exponent]))
         exact = float(mpmath.quad(lambda u: u ** (-exponent), [1.0, x]))
         assert found.low[0] - 1e-9 * abs(exact) <= exact <= found.high[0] + 1e-9 * abs(exact)
+
+
+SIGNS = st.sampled_from([-1.0, 0.0, 1.0])
+SIZES = st.one_of(st.floats(1e-3, 1e3), st.integers(1, 9).map(float))
+SIGNED = st.tuples(SIGNS, SIZES).map(lambda pair: pair[0] * pair[1])
+PAIRS = st.tuples(SIGNED, SIGNED).map(sorted)
+
+
+@pytest.mark.parametrize(
+    "join", [operator.add, operator.sub, operator.mul, operator.truediv], ids="+-*/"
+)
+@settings(deadline=None, max_examples=500)
+@given(one=PAIRS, other=PAIRS)
+def test_all_cases_of_signs_agree_with_mpmath_s_intervals(
+    join: Callable[[Any, Any], Any], one: list[float], other: list[float]
+) -> None:
+    """Our ends lie at most four units in the last place outside those of mpmath."""
+    assume(join is not operator.truediv or other[0] > 0.0 or other[1] < 0.0)
+    found = join(interval.hull(*one), interval.hull(*other))
+    theirs = join(mpmath.iv.mpf(one), mpmath.iv.mpf(other))
+    low, high = float(theirs.a), float(theirs.b)
+    assert low - 4.0 * np.spacing(abs(low)) <= found.low <= low
+    assert high <= found.high <= high + 4.0 * np.spacing(abs(high))
