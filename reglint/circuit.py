@@ -1,6 +1,6 @@
 """A kind of regulator under a derating policy: every name its formulas may use."""
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -26,6 +26,19 @@ class Circuit:
     def reach(self, name: str) -> frozenset[str]:
         """Return every name that a name depends on, itself included."""
         return self._reach.get(name) or frozenset((name,))
+
+    def needed(self, formulas: Iterable[Formula], fixes: Mapping[str, Formula]) -> frozenset[str]:
+        """Return every name some formulas need, where an operating condition fixes others."""
+        found: set[str] = set()
+        ahead = {name for formula in formulas for name in _names(formula)}
+        while ahead:
+            name = ahead.pop()
+            found.add(name)
+            if name in fixes:
+                ahead |= _names(fixes[name]) - found
+            elif name in self.quantities:
+                ahead |= _direct(self.quantities[name]) - found
+        return frozenset(found)
 
     def reach_of(self, formula: Formula) -> frozenset[str]:
         """Return every name a formula depends on."""
@@ -92,9 +105,11 @@ def _allowed(
 
 def _direct(quantity: Quantity) -> frozenset[str]:
     """Return the names a quantity's formulas mention."""
-    return frozenset(
-        name.name for formula in _formulas(quantity) for name in names_in(formula.root)
-    )
+    return frozenset(name for formula in _formulas(quantity) for name in _names(formula))
+
+
+def _names(formula: Formula) -> frozenset[str]:
+    return frozenset(name.name for name in names_in(formula.root))
 
 
 def _formulas(quantity: Quantity) -> Iterator[Formula]:

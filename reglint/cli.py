@@ -144,7 +144,9 @@ def sheet(
     for problem in problems:
         click.echo(f"reglint: {problem}", err=True)
     chosen = _chosen(cases, name, spec)
-    write("\n".join(calculation(case.spec, case.circuit) for case in chosen), out)
+    write(
+        "\n".join(calculation(case.spec, case.circuit, case.rules.values()) for case in chosen), out
+    )
     context.exit(2 if problems else 0)
 
 

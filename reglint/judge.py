@@ -97,7 +97,7 @@ def _findings(
         by_condition[rule.condition].append(rule)
     for condition, group in by_condition.items():
         box = boxes[condition]
-        looks = look(box, [Margin(rule) for rule in group])
+        looks = look(box, [Margin(rule) for rule in group], [rule.warn_margin for rule in group])
         for rule, seen in zip(group, looks, strict=True):
             rows = _checkable(box, rule, found)
             for row, finding in _judged(seen, rule, rows, wanted):

@@ -58,13 +58,16 @@ class Proven:
     bound: Array
 
 
-def look(box: Box, measures: Sequence[Measure]) -> list[Look]:
-    """Take a first look at each measure over each spec's whole box: its bound, its directions."""
+def look(box: Box, measures: Sequence[Measure], enough: Sequence[float]) -> list[Look]:
+    """Take a first look at each measure over each spec's whole box: its bound, its directions.
+
+    ``enough`` is the value of each measure that its bound need not go beyond.
+    """
     parts = []
     with np.errstate(all="ignore"):
         for start in range(0, len(box.specs), _AT_ONCE):
             part = box.take(np.arange(start, min(start + _AT_ONCE, len(box.specs))))
-            parts.append(list(_lower_bounds(part, measures)))
+            parts.append(list(_lower_bounds(part, measures, enough)))
     return [_look(box, each) for each in zip(*parts, strict=True)]
 
 
@@ -111,7 +114,7 @@ def _proven(box: Box, measure: Measure, enough: float, fine_rounds: int) -> Prov
     ranges = box.high - box.low
     pieces, owner = box, np.arange(len(box.specs))
     for turn in range(_MOST_ROUNDS):
-        ((least, partials),) = _lower_bounds(pieces, [measure])
+        ((least, partials),) = _lower_bounds(pieces, [measure], [np.inf])
         points = (pieces.low == pieces.high).all(axis=1)
         found = _with_points(found, pieces, owner, measure, points & (least < found.value[owner]))
         target = _target(found.value, enough if turn >= fine_rounds else np.inf)
@@ -140,23 +143,33 @@ def _target(value: Array, enough: float) -> Array:
     return np.where(value < 0.0, -np.inf, np.minimum(near, decides))
 
 
-def _lower_bounds(box: Box, measures: Sequence[Measure]) -> Iterator[tuple[Array, Partials]]:
+def _lower_bounds(
+    box: Box, measures: Sequence[Measure], enough: Sequence[float]
+) -> Iterator[tuple[Array, Partials]]:
     """Yield what each measure cannot fall below in each box, and its partials there.
 
-    The bound is the better of two: the measure's own enclosure, and the mean value form
-    around the middle.
+    The measure's own enclosure; where that is not enough, the better of it and the mean
+    value form around the middle.
     """
-    values, middle = _gradients(box), Interval(box.low, box.high).middle
+    values = _gradients(box)
+    middle = Interval(box.low, box.high).middle
     at_middle = _intervals_at(box, middle)
-    for measure in measures:
+    for measure, wanted in zip(measures, enough, strict=True):
         measured = measure(values)
         partials = _partials(measured, box)
-        reach = Interval(*partials) * (Interval(box.low, box.high) - middle)
-        fall = lift(0.0)
-        for column in range(len(box.names)):
-            fall = fall + Interval(reach.low[:, column], reach.high[:, column])
-        least = np.fmax(measured.value.low, (lift(measure(at_middle)) + fall).low)
-        yield np.nan_to_num(np.broadcast_to(least, len(box.specs)), nan=-np.inf), partials
+        least = np.broadcast_to(measured.value.low, len(box.specs))
+        if not (least >= wanted).all():
+            reach = Interval(*partials) * (Interval(box.low, box.high) - middle)
+            least = np.fmax(least, (lift(measure(at_middle)) + _summed(reach)).low)
+        yield np.nan_to_num(least, nan=-np.inf), partials
+
+
+def _summed(parts: Interval) -> Interval:
+    """Return the sum over the columns."""
+    total = lift(0.0)
+    for column in range(parts.low.shape[1]):
+        total = total + Interval(parts.low[:, column], parts.high[:, column])
+    return total
 
 
 def _intervals_at(box: Box, points: Array) -> Values[Interval]:

@@ -1,6 +1,7 @@
 """The calculation sheet: every figure and formula of one spec, with the numbers put in."""
 
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
+from dataclasses import replace
 from typing import TypeAlias
 
 import numpy as np
@@ -12,6 +13,7 @@ from reglint.finding import Extent
 from reglint.formula import with_numbers
 from reglint.kind import Condition, Field, Quantity
 from reglint.quantity import render
+from reglint.rule import Rule
 from reglint.spec import Spec
 
 #: Gives a name's number as text.
@@ -21,7 +23,7 @@ _Number: TypeAlias = Callable[[str], str]
 _DIGITS = 6
 
 
-def sheet(spec: Spec, circuit: Circuit) -> str:
+def sheet(spec: Spec, circuit: Circuit, rules: Iterable[Rule]) -> str:
     """Return the sheet as text: what is stated, then each condition's quantities."""
     numbers = numbers_of(circuit, [spec])
     conditions = circuit.kind.conditions
@@ -29,7 +31,7 @@ def sheet(spec: Spec, circuit: Circuit) -> str:
     ranges = {(each.condition, each.quantity): each for each in extents(boxes)[0]}
     lines = [*_heading(spec, circuit), *_stated(spec)]
     for name, box in boxes.items():
-        lines += _condition(conditions[name], box, ranges)
+        lines += _condition(conditions[name], box, rules, ranges)
     return "\n".join(lines) + "\n"
 
 
@@ -96,19 +98,35 @@ def _numbers(quantity: Quantity, box: Box) -> _Number:
 
 
 def _condition(
-    condition: Condition, box: Box, ranges: Mapping[tuple[str, str], Extent]
+    condition: Condition,
+    box: Box,
+    rules: Iterable[Rule],
+    ranges: Mapping[tuple[str, str], Extent],
 ) -> Iterator[str]:
-    """Yield the quantities under one condition, but those that stand above already."""
+    """Yield the quantities that rules under one condition need, but those that stand above."""
     first = next(iter(box.circuit.kind.conditions))
-    yield f"Under {condition.name}: {condition.says}"
-    if condition.name != first:
-        yield f"  (Quantities with the same range as under {first} are left out.)"
+    judged = [rule for rule in rules if rule.condition == condition.name]
+    asked = [formula for rule in judged for formula in rule.formulas()]
+    needed = box.circuit.needed(asked, condition.fixes)
+    lines: list[str] = []
     for name, quantity in box.circuit.quantities.items():
         extent, before = ranges.get((condition.name, name)), ranges.get((first, name))
-        repeated = condition.name != first and before and extent and _same(extent, before)
-        if extent is not None and name not in condition.fixes and not repeated:
-            yield from _quantity(quantity, extent, box)
-    yield ""
+        repeated = before is not None and extent is not None and _same(extent, before)
+        told = condition.name == first or (name in needed and not repeated)
+        if extent is not None and told:
+            lines += _quantity(_as_fixed(quantity, condition), extent, box)
+    if lines:
+        yield f"Under {condition.name}: {condition.says}"
+        if condition.name != first:
+            yield f"  (What is the same as under {first}, or bears on no rule here, is left out.)"
+        yield from lines
+        yield ""
+
+
+def _as_fixed(quantity: Quantity, condition: Condition) -> Quantity:
+    """Return a quantity with the formula that the condition fixes it by, where it does."""
+    formula = condition.fixes.get(quantity.path)
+    return quantity if formula is None else replace(quantity, formula=formula, root=None, given={})
 
 
 def _same(one: Extent, other: Extent) -> bool:
