@@ -3,7 +3,7 @@
 from collections.abc import Iterable
 
 from reglint.part import Part
-from reglint.tree import plain
+from reglint.tree import one_line
 
 
 def listed(parts: Iterable[Part]) -> str:
@@ -14,8 +14,8 @@ def listed(parts: Iterable[Part]) -> str:
 
 def described(part: Part) -> str:
     """Return what is known of one part, and from where."""
-    figures = {**plain(part.common), **plain(part.own)}
+    entries = part.common.entries | part.own.entries
     lines = [f"{part.name}, a {part.part_class}: {part.title}"]
-    lines += [f"  {name}: {text}" for name, text in figures.items()]
+    lines += [f"  {name}: {one_line(entry.value)}" for name, entry in entries.items()]
     lines += [f"  source: {part.source}", f"  file: {part.file}"]
     return "\n".join(lines) + "\n"

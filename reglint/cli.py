@@ -106,17 +106,17 @@ def check(
     day = today or date.today()  # noqa: DTZ011 -- a waiver ends on the reader's own day
     wanted = Wanted(day, everything, reports.wants_extents(report))
     run = project.check(specs, wanted)
-    _check_supposed(suppositions, run)
+    _check_supposed(project, run)
     options = Options(everything, out is None and _coloured(colour))
     write(reports.renderer(report)(run, options), out)
     context.exit(_status(run, gate or project.gate()))
 
 
-def _check_supposed(suppositions: tuple[Supposition, ...], run: Run) -> None:
-    """Refuse a supposition about a spec that is not there, unless something is unreadable."""
-    known = {verdict.spec.name for verdict in run.verdicts}
-    for each in suppositions:
-        if each.spec not in known and not run.problems:
+def _check_supposed(project: Project, run: Run) -> None:
+    """Refuse a supposition about a spec that is not there."""
+    known = [verdict.spec.name for verdict in run.verdicts]
+    for each in project.suppositions:
+        if each not in project.used:
             raise UsageError(f"no spec is called {each.spec}{hint(each.spec, known)}")
 
 

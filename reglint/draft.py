@@ -37,6 +37,11 @@ class Draft:
             span = at.span if at is not None else span_of(self.root, path.split("."))
             self.complaints.append(Complaint(span, f"{path}: {message}"))
 
+    def lacks_its_part(self, path: str) -> bool:
+        """Tell whether a field's component names a part that is not known; that is told already."""
+        component = path.partition(".")[0]
+        return f"{component}.part" in self.texts and component not in self.parts
+
     def assume(self, path: str, says: str) -> None:
         """Note what was taken for a figure the spec does not state."""
         self.assumptions.append(Assumption(path, says))

@@ -1,5 +1,6 @@
 """Extents: the range of every quantity over the box of each operating condition."""
 
+import math
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 
@@ -34,8 +35,16 @@ def _under(condition: str, box: Box) -> Iterator[tuple[int, Extent]]:
             middle = np.broadcast_to(nominal(name), (len(box.specs), 1))[:, 0]
             low, high = ends[Signed(name, 1.0)].value, -ends[Signed(name, -1.0)].value
             for row in np.flatnonzero(~np.isnan(low + high)):
-                range_ = (float(low[row]), float(middle[row]), float(high[row]))
+                range_ = _clean(float(low[row]), float(middle[row]), float(high[row]))
                 yield int(row), Extent(name, condition, quantity.unit, *range_)
+
+
+def _clean(low: float, middle: float, high: float) -> tuple[float, float, float]:
+    """Return ends with what is only rounding, against the largest of them, as zero."""
+    finite = (abs(end) for end in (low, middle, high) if math.isfinite(end))
+    least = 1e-12 * max(finite, default=0.0)
+    low, middle, high = (0.0 if abs(end) < least else end for end in (low, middle, high))
+    return low, middle, high
 
 
 @dataclass(frozen=True, slots=True)

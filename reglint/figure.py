@@ -130,9 +130,11 @@ def _is_ratio(node: Node) -> bool:
     return any("%" in each.text or "ppm" in each.text for each in texts)
 
 
-def _of_whole(draft: Draft, one: Field, ratio: Range) -> Range:
+def _of_whole(draft: Draft, one: Field, ratio: Range) -> Range | None:
     """Turn a coefficient in 1/K into one of the whole it is a fraction of, never narrower."""
     terms = draft.swept.get(one.relative_to)
+    if terms is None and draft.lacks_its_part(one.path):
+        return None
     if terms is None:
         raise QuantityError(f"a coefficient in %/K needs {one.relative_to} to be stated")
     (whole,) = terms

@@ -13,7 +13,7 @@ from reglint.document import read
 from reglint.draft import Context
 from reglint.errors import UsageError
 from reglint.files import Folder, read_bytes
-from reglint.finding import Run
+from reglint.finding import Run, Verdict
 from reglint.judge import Case, Wanted, judge
 from reglint.kind import Kind
 from reglint.nearest import hint
@@ -24,7 +24,11 @@ from reglint.settings import NAME, Settings, read_settings, root_above
 from reglint.source import TOP, Complaint, Problem
 from reglint.spec import Spec
 from reglint.spec_schema import spec_schema
-from reglint.tree import Document, Scalar, changed, find
+from reglint.tree import Document, Mapping, Scalar, changed, find
+
+#: Specs judged as one array: enough for its speed, few enough that their trees take little
+#: memory.
+_AT_ONCE = 500
 
 
 @dataclass(frozen=True, slots=True)
@@ -62,6 +66,8 @@ class Project:
     #: Values to try instead of those in the files.
     suppositions: tuple[Supposition, ...] = ()
     homes: dict[Path, Home] = dataclass_field(default_factory=dict)
+    #: The suppositions that met their spec.
+    used: set[Supposition] = dataclass_field(default_factory=set)
 
     def show(self, path: Path) -> str:
         """Return how a path is shown: relative, with ``/``."""
@@ -96,13 +102,17 @@ class Project:
 
     def check(self, paths: Iterable[Path], wanted: Wanted) -> Run:
         """Check the specs that paths lead to; one bad file never stops the others."""
+        verdicts: list[Verdict] = []
         cases: list[Case] = []
         problems: list[Problem] = []
         for path in paths:
             read_cases, found = self.read(path)
             cases += read_cases
             problems += found
-        verdicts = judge(cases, wanted)
+            if len(cases) >= _AT_ONCE:
+                verdicts += map(_bare, judge(cases, wanted))
+                cases = []
+        verdicts += map(_bare, judge(cases, wanted))
         return Run(tuple(verdicts), tuple(sorted({*problems, *self.problems()})))
 
     def problems(self) -> list[Problem]:
@@ -118,8 +128,11 @@ class Project:
             return [], [Problem(shown, TOP, data)]
         reading, home = read(data), self.home(path)
         found, cases = list(reading.complaints), []
-        for document in map(self._supposed, reading.documents):
-            case = self._case(document, home, shown, found)
+        for stated in reading.documents:
+            document = self._supposed(stated)
+            wrong: list[Complaint] = []
+            case = self._case(document, home, shown, wrong)
+            found += wrong if document is stated else map(_as_supposed, wrong)
             if case is not None:
                 cases.append(case)
         found += _repeated([case.spec for case in cases])
@@ -131,6 +144,7 @@ class Project:
         for each in self.suppositions:
             if isinstance(node, Scalar) and node.text == each.spec:
                 document = with_value(document, each.field, each.text)
+                self.used.add(each)
         return document
 
     def variants(self, path: Path, case: Case, field: str, texts: Iterable[str]) -> list[Case]:
@@ -193,6 +207,16 @@ class Project:
             inner = each.relative_to(home.settings.root) if _inside(each, home) else each
             if any(_matches(inner.as_posix(), glob) for glob in home.settings.specs):
                 yield each
+
+
+def _as_supposed(complaint: Complaint) -> Complaint:
+    return replace(complaint, message=f"{complaint.message} (with the values supposed)")
+
+
+def _bare(verdict: Verdict) -> Verdict:
+    """Return a verdict whose spec has lost its figures: places in a report are known by now."""
+    tree = Mapping({}, verdict.spec.root.span)
+    return replace(verdict, spec=replace(verdict.spec, root=tree, numbers={}, swept={}, origins={}))
 
 
 def with_value(document: Document, field: str, text: str) -> Document:

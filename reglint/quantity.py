@@ -48,12 +48,23 @@ _CELSIUS = ("degC", "°C")
 _RATIOS: Mapping[str, int] = {"1": 0, "%": -2, "ppm": -6}
 _RATIO_WORD = "a plain number"
 
+#: What a field in a unit may say, where 4.7 of it would be odd.
+_EXAMPLES: Mapping[str, str] = {
+    "degC": "25 °C",
+    "K/W": "170 K/W",
+    "W/K": "6.67 mW/K",
+    "V/K": "1.5 mV/K",
+    "1/K": "100 ppm/K",
+    "1": "4.7",
+}
+
 #: The longest number that is still one somebody measured.
 _MOST_DIGITS = 40
 _NUMBER = r"[-−+]?(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][-−+]?[0-9]+)?"
 _QUANTITY = re.compile(rf"({_NUMBER})[ ]?([^ 0-9.+−-][^ ]*|1/[^ ]+)?")
 _LITERAL = re.compile(r"(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][-+]?[0-9]+)?(?![\w.])")
 _UNIT_WORD = re.compile(r" ?([A-Za-z\u03a9\u2126µμ°%]+(?:/[A-Za-z°]+)?)(?![\w.(])")
+_AROUND_ZERO = re.compile(r"(?:±|\+/-|\+-) ?(.+)")
 _SYMMETRIC = re.compile(r"(.+?) ?(?:±|\+/-|\+-) ?(.+)")
 _UNEVEN = re.compile(rf"(.+?) \+ ?({_NUMBER})( ?[^ 0-9/]+)? ?/ ?[-−] ?({_NUMBER} ?[^ 0-9]+)")
 _CODE = re.compile(r"([0-9]*)([RKkMGTpnuµμmF])([0-9]*)")
@@ -176,7 +187,7 @@ def _value(number: str, stated: Unit) -> float:
 
 def _refused(text: str, wanted: str) -> str:
     """Return why a text is no quantity, and what to write."""
-    example = f"for example 4.7 {_spelled(wanted)}" if wanted != "1" else "for example 4.7"
+    example = f"for example {_EXAMPLES.get(wanted, f'4.7 {wanted}')}"
     if "," in text:
         return f"{text}: a comma is not a decimal point here; write {text.replace(',', '.')}"
     if text.strip(" +-−").lower().startswith(("nan", "inf", ".nan", ".inf")):
@@ -218,9 +229,14 @@ def _coded(text: str, wanted: str) -> float | None:
 def parse_range(text: str, wanted: str, *, code: bool = False) -> Range:
     """Return the range of ``12 V``, ``12 V ± 10 %``, ``12 V ± 0.5 V`` or ``12 V +10/-15 %``.
 
+    ``± 1.5 mV/K`` is a range around zero.
+
     Raises `QuantityError`.
     """
-    if found := _SYMMETRIC.fullmatch(text):
+    if found := _AROUND_ZERO.fullmatch(text):
+        nominal = 0.0
+        above = below = _deviation(found[1], nominal, wanted)
+    elif found := _SYMMETRIC.fullmatch(text):
         nominal = parse(found[1], wanted, code=code)
         above = below = _deviation(found[2], nominal, wanted)
     elif found := _UNEVEN.fullmatch(text):

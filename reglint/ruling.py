@@ -123,7 +123,8 @@ def _sentence(rule: Rule, worst: WorstPoint, unit: str) -> str:
     value, limit = quantity.render(worst.value, unit), quantity.render(worst.limit, unit)
     demand = "at least" if rule.holds.sign == ">=" else "at most"
     what = rule.holds.value
-    subject = f"{what.text.strip()} is" if isinstance(what.root, Name) else f"{rule.title}:"
+    named = isinstance(what.root, Name)
+    subject = f"{what.text.strip()} is" if named else f"wanted: {rule.title}; found"
     margin = percent(worst.margin)
     return f"{subject} {value} at worst, {demand} {limit} is wanted (margin {margin})"
 

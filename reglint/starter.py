@@ -4,7 +4,7 @@ from collections.abc import Iterator
 
 from reglint.kind import Field, Kind
 from reglint.tree import Mapping as MappingNode
-from reglint.tree import Node, Scalar
+from reglint.tree import Node, Scalar, one_line
 
 _COMPONENT = {
     "ref": "Reference designator (IEEE 315).",
@@ -27,11 +27,11 @@ def starter(kind: Kind) -> str:
 
 def _top(kind: Kind, key: str, node: Node) -> Iterator[str]:
     if isinstance(node, Scalar):
-        yield _line(kind, key, f"{key}: {_text(node)}", "")
+        yield _line(kind, key, f"{key}: {one_line(node)}", "")
     elif isinstance(node, MappingNode):
         yield f"{key}:  # {says}" if (says := _says(kind, key)) else f"{key}:"
         for name, entry in node.entries.items():
-            yield _line(kind, f"{key}.{name}", f"{name}: {_flow(entry.value)}", "  ")
+            yield _line(kind, f"{key}.{name}", f"{name}: {one_line(entry.value)}", "  ")
         yield from _others(kind, key, node)
 
 
@@ -58,17 +58,3 @@ def _others(kind: Kind, key: str, node: MappingNode) -> Iterator[str]:
 
 def _example(field: Field) -> str:
     return field.example or field.default or "…"
-
-
-def _flow(node: Node) -> str:
-    """Return a value on one line."""
-    if isinstance(node, Scalar):
-        return _text(node)
-    if isinstance(node, MappingNode):
-        pairs = (f"{key}: {_flow(entry.value)}" for key, entry in node.entries.items())
-        return "{" + ", ".join(pairs) + "}"
-    return "[" + ", ".join(map(_flow, node.items)) + "]"
-
-
-def _text(scalar: Scalar) -> str:
-    return scalar.text if scalar.plain else f'"{scalar.text}"'

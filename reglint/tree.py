@@ -98,6 +98,16 @@ def _step(node: Node, step: str | int) -> Entry | None:
     return None
 
 
+def one_line(node: Node) -> str:
+    """Return a value as YAML on one line."""
+    if isinstance(node, Scalar):
+        return node.text if node.plain else f'"{node.text}"'
+    if isinstance(node, Mapping):
+        pairs = (f"{name}: {one_line(entry.value)}" for name, entry in node.entries.items())
+        return "{" + ", ".join(pairs) + "}"
+    return "[" + ", ".join(map(one_line, node.items)) + "]"
+
+
 def changed(node: Mapping, path: Sequence_[str], text: str) -> Mapping:
     """Return a copy with one value changed or added; what is new stands where its parent does."""
     name, *rest = path

@@ -69,7 +69,7 @@ def window(spec: Spec, field: str, tried: Sequence[float], verdicts: Sequence[Ve
 
 
 def _rules(verdict: Verdict, outcome: Outcome) -> frozenset[str]:
-    found = (each for each in verdict.findings if not each.waived)
+    found = (f for f in verdict.findings if not f.waived and f.rule in verdict.rules)
     return frozenset(each.rule for each in found if each.outcome is outcome)
 
 

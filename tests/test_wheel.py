@@ -39,6 +39,6 @@ def test_the_wheel_checks_a_spec_from_elsewhere(wheel: Path, tmp_path: Path) -> 
     spec.write_text(reglint("starter", "zener-shunt").stdout, encoding="utf-8")
     result = reglint("check", "new.reg.yaml")
     assert result.returncode == 0, result.stdout + result.stderr
-    assert "1 spec: 0 fail, 0 warn, 17 pass." in result.stdout
+    assert "1 spec: 0 fail, 0 warn, 1 pass; rules: 0 fail, 0 warn, 17 pass." in result.stdout
     where = [python, "-I", "-c", "import reglint; print(reglint.__file__)"]
     assert str(home) in subprocess.run(where, capture_output=True, text=True, check=True).stdout

@@ -1,5 +1,6 @@
 """The text report: for each spec a heading with counts, then what is not a pass."""
 
+from collections import Counter
 from collections.abc import Iterator, Mapping
 
 from reglint.finding import Finding, Outcome, Run, Verdict
@@ -102,10 +103,11 @@ def _word(word: str, options: Options) -> str:
 
 
 def _summary(run: Run) -> Iterator[str]:
-    counts = [f"{run.count(each)} {each.value}" for each in reversed(Outcome)]
-    if run.waived:
-        counts.append(f"{run.waived} waived")
-    yield f"{_plural(len(run.verdicts), 'spec')}: {', '.join(counts)}."
+    ends = Counter(verdict.outcome for verdict in run.verdicts)
+    specs = ", ".join(f"{ends[each]} {each.value}" for each in reversed(Outcome))
+    rules = ", ".join(f"{run.count(each)} {each.value}" for each in reversed(Outcome))
+    waived = f", {run.waived} waived" if run.waived else ""
+    yield f"{_plural(len(run.verdicts), 'spec')}: {specs}; rules: {rules}{waived}."
     if run.problems:
         yield f"{_plural(run.unreadable, 'file')} with something that could not be used."
     yield _SAFETY
