@@ -108,6 +108,8 @@ def _summary(run: Run) -> Iterator[str]:
     rules = ", ".join(f"{run.count(each)} {each.value}" for each in reversed(Outcome))
     waived = f", {run.waived} waived" if run.waived else ""
     yield f"{_plural(len(run.verdicts), 'spec')}: {specs}; rules: {rules}{waived}."
+    if ends[Outcome.FAIL]:
+        yield "The standard values at which a failing spec would hold: reglint window FILE."
     if run.problems:
         yield f"{_plural(run.unreadable, 'file')} with something that could not be used."
     yield _SAFETY
