@@ -103,6 +103,9 @@ def check(
     """Check the specs that PATHS lead to; without PATHS, those below this folder."""
     project = Project(Path.cwd(), derating, suppositions)
     specs = project.specs(paths or (Path.cwd(),))
+    for path in project.untracked:
+        said = "is not tracked by git yet: a check elsewhere will not see it"
+        click.echo(f"reglint: {project.show(path)} {said}", err=True)
     day = today or date.today()  # noqa: DTZ011 -- a waiver ends on the reader's own day
     wanted = Wanted(day, everything, reports.wants_extents(report))
     run = project.check(specs, wanted)

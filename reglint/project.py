@@ -66,6 +66,8 @@ class Project:
     #: Values to try instead of those in the files.
     suppositions: tuple[Supposition, ...] = ()
     homes: dict[Path, Home] = dataclass_field(default_factory=dict)
+    #: Specs found that git does not track: a check elsewhere will not see them.
+    untracked: list[Path] = dataclass_field(default_factory=list)
     #: The suppositions that met their spec.
     used: set[Supposition] = dataclass_field(default_factory=set)
 
@@ -202,10 +204,12 @@ class Project:
 
     def _below(self, path: Path) -> Iterator[Path]:
         folder = path if path.is_dir() else root_above(path.parent) or path.parent
-        for each in _listed(folder):
+        for each, tracked in _listed(folder):
             home = self.home(each)
             inner = each.relative_to(home.settings.root) if _inside(each, home) else each
             if any(_matches(inner.as_posix(), glob) for glob in home.settings.specs):
+                if not tracked:
+                    self.untracked.append(each)
                 yield each
 
 
@@ -255,21 +259,31 @@ def _inside(path: Path, home: Home) -> bool:
     return path.is_relative_to(home.settings.root)
 
 
-def _listed(folder: Path) -> Iterator[Path]:
-    """Yield the files below a folder: those git knows or would add; all, outside of git."""
-    names = _known_to_git(folder)
-    paths = folder.rglob("*") if names is None else (folder / name for name in set(names))
-    yield from sorted(path for path in paths if path.is_file())
+#: What git would add: files it neither tracks nor ignores.
+_NOT_YET = ("--others", "--exclude-standard")
 
 
-def _known_to_git(folder: Path) -> list[str] | None:
-    """Return the files git tracks or would add below a folder, or nothing outside of git."""
-    command = ["git", "ls-files", "-z", "--cached", "--others", "--exclude-standard"]
+def _listed(folder: Path) -> Iterator[tuple[Path, bool]]:
+    """Yield the files below a folder, each with whether git will bring it elsewhere.
+
+    Those are the files git tracks, and those it would add; all files, outside of git.
+    """
+    tracked, new = (_git(folder, *words) for words in (("--cached",), _NOT_YET))
+    if tracked is None or new is None:
+        found = dict.fromkeys(folder.rglob("*"), True)
+    else:
+        found = {folder / name: name in tracked for name in tracked | new}
+    yield from ((path, found[path]) for path in sorted(found) if path.is_file())
+
+
+def _git(folder: Path, *words: str) -> set[str] | None:
+    """Return the files git lists below a folder, or nothing where there is no repository."""
+    command = ["git", "ls-files", "-z", *words]
     try:
         listing = subprocess.run(command, cwd=folder, capture_output=True, check=True)  # noqa: S603
     except (OSError, subprocess.CalledProcessError):
         return None  # no git, or no repository: the folder itself is what there is
-    return [os.fsdecode(name) for name in listing.stdout.split(b"\0") if name]
+    return {os.fsdecode(name) for name in listing.stdout.split(b"\0") if name}
 
 
 @cache

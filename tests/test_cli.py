@@ -1,5 +1,6 @@
 """The command line: status, gate, colour, output files, and each command's words."""
 
+import subprocess
 from pathlib import Path
 
 import pytest
@@ -107,6 +108,25 @@ def test_a_changed_part_checks_its_whole_project(folder: Path) -> None:
     """A file of knowledge or settings stands for the specs that may depend on it."""
     (folder / "reglint.yaml").write_text("format: 1\n", encoding="utf-8")
     assert "starved" in run("check", "reglint.yaml").stdout
+
+
+def test_a_spec_git_does_not_track_is_told(folder: Path) -> None:
+    """What only this working tree has is checked, and said on standard error."""
+    subprocess.run(["git", "init", "-q"], cwd=folder, check=True)
+    result = run("check", "--report", "lines")
+    told = "reglint: a.reg.yaml is not tracked by git yet: a check elsewhere will not see it\n"
+    assert result.stderr == told
+    subprocess.run(["git", "add", "a.reg.yaml"], cwd=folder, check=True)
+    again = run("check", "--report", "lines")
+    assert (again.stderr, again.stdout) == ("", result.stdout)
+
+
+def test_an_ignored_spec_is_not_checked(folder: Path) -> None:
+    """What git ignores is no part of the project."""
+    subprocess.run(["git", "init", "-q"], cwd=folder, check=True)
+    (folder / ".gitignore").write_text("b.reg.yaml\n", encoding="utf-8")
+    (folder / "b.reg.yaml").write_text("nonsense", encoding="utf-8")
+    assert "b.reg.yaml" not in run("check").stdout
 
 
 def test_the_version_is_told() -> None:
