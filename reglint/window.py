@@ -82,7 +82,8 @@ def told(spec: Spec, found: Window) -> str:
 
 def _holding(found: Window) -> Iterator[str]:
     clean = [value for value in found.holding() if not found.warning[value]]
-    yield f"  every rule passes at  {_listed(clean, found.unit)}"
+    if clean:
+        yield f"  every rule passes at  {_listed(clean, found.unit)}"
     for value in found.holding():
         if rules := sorted(found.warning[value]):
             yield f"  with warnings at      {render(value, found.unit)} ({', '.join(rules)})"
@@ -95,7 +96,7 @@ def _clash(found: Window) -> Iterator[str]:
 
 
 def _listed(values_: Sequence[float], unit: str) -> str:
-    return ", ".join(render(value, unit) for value in values_) or "none"
+    return ", ".join(render(value, unit) for value in values_)
 
 
 def _span(values_: Sequence[float], unit: str) -> str:
