@@ -19,7 +19,7 @@ from reglint.catalogue import described, listed
 from reglint.errors import UsageError
 from reglint.explain import explain as explain_name
 from reglint.finding import Outcome, Run
-from reglint.judge import Case, Wanted, judge
+from reglint.judge import Case, Wanted
 from reglint.kind import Kind
 from reglint.nearest import hint
 from reglint.output import write
@@ -30,7 +30,6 @@ from reglint.sheet import sheet as calculation
 from reglint.spec_schema import editor_schema
 from reglint.starter import starter as commented
 from reglint.window import told, trials
-from reglint.window import window as design_window
 
 F = TypeVar("F", bound=Callable[..., Any])
 
@@ -167,14 +166,14 @@ def window(spec: Path, field: str | None, name: str | None, derating: str | None
     cases, problems = project.read(spec)
     if problems:
         raise UsageError(str(problems[0]))
-    wanted = Wanted(date.today())  # noqa: DTZ011 -- a waiver ends on the reader's own day
+    today = date.today()  # noqa: DTZ011 -- a waiver ends on the reader's own day
     for case in _chosen(cases, name, spec):
         adjusted = {each for rule in case.rules.values() for each in rule.adjust}
         for each in [field] if field else sorted(adjusted):
-            tried = trials(case.spec, each)
-            variants = project.variants(spec, case, each, tried.values())
-            found = design_window(case.spec, each, list(tried), judge(variants, wanted))
-            write(told(case.spec, found), None)
+            if not (tried := trials(case.spec, each)):
+                said = "with a tolerance, so no series is meant"
+                raise UsageError(f"{case.spec.name} states no {each} {said}")
+            write(told(case.spec, project.window(case, each, tried, today)), None)
 
 
 @cli.command()

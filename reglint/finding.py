@@ -1,7 +1,7 @@
 """Findings: what a rule says about a spec. Data only."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from enum import Enum
 
 from reglint.kind import Kind
@@ -88,6 +88,8 @@ class Verdict:
     #: Rules skipped because the spec states no limit for them.
     skipped: tuple[str, ...] = ()
     extents: tuple[Extent, ...] = ()
+    #: For a failing spec, the standard values of its adjustable fields at which no rule fails.
+    windows: Mapping[str, tuple[float, ...]] = field(default_factory=dict)
 
     @property
     def kind(self) -> Kind:

@@ -3,9 +3,10 @@
 import os
 import re
 import subprocess
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from dataclasses import field as dataclass_field
+from datetime import date
 from functools import cache
 from pathlib import Path
 
@@ -13,7 +14,7 @@ from reglint.document import read
 from reglint.draft import Context
 from reglint.errors import UsageError
 from reglint.files import Folder, read_bytes
-from reglint.finding import Run, Verdict
+from reglint.finding import Outcome, Run, Verdict
 from reglint.judge import Case, Wanted, judge
 from reglint.kind import Kind
 from reglint.nearest import hint
@@ -24,11 +25,17 @@ from reglint.settings import NAME, Settings, read_settings, root_above
 from reglint.source import TOP, Complaint, Problem
 from reglint.spec import Spec
 from reglint.spec_schema import spec_schema
-from reglint.tree import Document, Mapping, Scalar, changed, find
+from reglint.tree import Document, Scalar, changed, find
+from reglint.tree import Mapping as MappingNode
+from reglint.window import Window, trials
+from reglint.window import window as window_of
 
 #: Specs judged as one array: enough for its speed, few enough that their trees take little
 #: memory.
 _AT_ONCE = 500
+#: Failing specs that are told what would hold, in a run of so many at most: each costs as
+#: much as fifty others.
+_MOST_MENDED, _OF = 5, 100
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,6 +75,8 @@ class Project:
     homes: dict[Path, Home] = dataclass_field(default_factory=dict)
     #: Specs found that git does not track: a check elsewhere will not see them.
     untracked: list[Path] = dataclass_field(default_factory=list)
+    #: How many failing specs were told what would hold.
+    mended: int = 0
     #: The suppositions that met their spec.
     used: set[Supposition] = dataclass_field(default_factory=set)
 
@@ -112,10 +121,39 @@ class Project:
             cases += read_cases
             problems += found
             if len(cases) >= _AT_ONCE:
-                verdicts += map(_bare, judge(cases, wanted))
+                verdicts += self._judged(cases, wanted)
                 cases = []
-        verdicts += map(_bare, judge(cases, wanted))
+        verdicts += self._judged(cases, wanted)
         return Run(tuple(verdicts), tuple(sorted({*problems, *self.problems()})))
+
+    def _judged(self, cases: Sequence[Case], wanted: Wanted) -> Iterator[Verdict]:
+        """Judge some specs; in a small run the first that fail are told what would hold."""
+        for case, verdict in zip(cases, judge(cases, wanted), strict=True):
+            told = self.mended < _MOST_MENDED and len(cases) <= _OF
+            if verdict.outcome is Outcome.FAIL and told:
+                self.mended += 1
+                yield _bare(replace(verdict, windows=self._windows(case, verdict, wanted)))
+            else:
+                yield _bare(verdict)
+
+    def _windows(
+        self, case: Case, verdict: Verdict, wanted: Wanted
+    ) -> dict[str, tuple[float, ...]]:
+        """Return the holding values of each field that a failing rule names for adjustment."""
+        failing = (each.rule for each in verdict.findings if each.outcome is Outcome.FAIL)
+        fields = {field for rule in failing for field in case.rules[rule].adjust}
+        found = {}
+        for field in sorted(fields):
+            tried = trials(case.spec, field)
+            if tried:
+                window = self.window(case, field, tried, wanted.today)
+                found[field] = window.holding()
+        return found
+
+    def window(self, case: Case, field: str, tried: Mapping[float, str], today: date) -> Window:
+        """Return what each value tried of one field comes to."""
+        variants = self.variants(case, field, tried.values())
+        return window_of(case.spec, field, list(tried), judge(variants, Wanted(today)))
 
     def problems(self) -> list[Problem]:
         """Return what is wrong with the settings and knowledge met so far."""
@@ -149,9 +187,9 @@ class Project:
                 self.used.add(each)
         return document
 
-    def variants(self, path: Path, case: Case, field: str, texts: Iterable[str]) -> list[Case]:
+    def variants(self, case: Case, field: str, texts: Iterable[str]) -> list[Case]:
         """Return a spec once for each text in place of one field's; it must have been sound."""
-        home, found = self.home(path), list[Complaint]()
+        home, found = self.home(self.folder / case.spec.file), list[Complaint]()
         documents = (with_value(Document(case.spec.root, 1), field, text) for text in texts)
         cases = [self._case(each, home, case.spec.file, found) for each in documents]
         return [each for each in cases if each is not None]
@@ -219,7 +257,7 @@ def _as_supposed(complaint: Complaint) -> Complaint:
 
 def _bare(verdict: Verdict) -> Verdict:
     """Return a verdict whose spec has lost its figures: places in a report are known by now."""
-    tree = Mapping({}, verdict.spec.root.span)
+    tree = MappingNode({}, verdict.spec.root.span)
     return replace(verdict, spec=replace(verdict.spec, root=tree, numbers={}, swept={}, origins={}))
 
 

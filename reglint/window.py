@@ -4,7 +4,6 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import combinations
 
-from reglint.errors import UsageError
 from reglint.finding import Outcome, Verdict
 from reglint.preferred import series_for, values
 from reglint.quantity import render
@@ -47,11 +46,11 @@ class Window:
 def trials(spec: Spec, field: str) -> dict[float, str]:
     """Return the standard values to try, with their texts: the stated tolerance is kept.
 
-    Raises `UsageError` for a field without a nominal value and a tolerance.
+    There are none for a field without a nominal value and a tolerance.
     """
     nominal, tolerance = (spec.numbers.get(f"{field}.{end}") for end in ("nominal", "tolerance"))
     if nominal is None or tolerance is None or nominal <= 0.0:
-        raise UsageError(f"{spec.name} states no {field} with a tolerance, so no series is meant")
+        return {}
     unit = spec.kind.fields[field].unit
     found = values(series_for(tolerance), nominal / _DECADE, nominal * _DECADE)
     return {value: f"{value!r} {unit} ± {100.0 * tolerance!r} %" for value in found}

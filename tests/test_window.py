@@ -1,5 +1,6 @@
 """The design window: against a scan of written-out specs, and where rules exclude each other."""
 
+import json
 from collections.abc import Callable
 from pathlib import Path
 
@@ -9,6 +10,7 @@ from click.testing import CliRunner
 
 from reglint.cli import cli
 from reglint.finding import Outcome, Run
+from reglint.reports import Options, renderer
 
 
 def test_the_window_is_what_a_scan_finds(
@@ -56,6 +58,23 @@ def test_rules_that_exclude_each_other_are_named(
         "maximum-zener-current",
         "minimum-zener-current",
     ]
+
+
+def test_a_failing_spec_is_told_what_would_hold(
+    check: Callable[..., Run], sample: Callable[..., str]
+) -> None:
+    """The check itself names the values, in words and in numbers; a passing spec needs none."""
+    failing, passing = sample({"series_resistor.resistance": "1.5 kohm ± 5 %"}), sample()
+    run = check(failing, passing.replace("gauge-reference", "other"), everything=False)
+    values = run.verdicts[0].windows["series_resistor.resistance"]
+    assert 470.0 in values
+    assert 1500.0 not in values
+    assert run.verdicts[1].windows == {}
+    text = renderer("text")(run, Options())
+    assert f"    would hold series_resistor.resistance at {values[0]:g} ohm, " in text
+    report = json.loads(renderer("json")(run, Options()))
+    (finding, *_) = report["specs"][0]["findings"]
+    assert finding["window"] == {"series_resistor.resistance": list(values)}
 
 
 def test_a_value_named_by_the_window_mends_a_spec(

@@ -41,7 +41,7 @@ def _spec(verdict: Verdict) -> dict[str, Any]:
         "outcome": verdict.outcome.value,
         "assumptions": [{"field": each.path, "says": each.says} for each in spec.assumptions],
         "quantities": {_key(each): _extent(each) for each in verdict.extents},
-        "findings": [_finding(each) for each in verdict.findings],
+        "findings": [_finding(each, verdict) for each in verdict.findings],
         "skipped": list(verdict.skipped),
     }
 
@@ -62,7 +62,8 @@ def _extent(extent: Extent) -> dict[str, Any]:
     }
 
 
-def _finding(finding: Finding) -> dict[str, Any]:
+def _finding(finding: Finding, verdict: Verdict) -> dict[str, Any]:
+    rule = verdict.rules.get(finding.rule)
     return {
         "rule": finding.rule,
         "outcome": finding.outcome.value,
@@ -81,6 +82,11 @@ def _finding(finding: Finding) -> dict[str, Any]:
         "remedy": finding.remedy,
         "corner": {name: _number(value) for name, value in (finding.corner or {}).items()},
         "shares": [_share(each) for each in finding.shares],
+        "window": {
+            field: list(values)
+            for field, values in verdict.windows.items()
+            if finding.outcome is Outcome.FAIL and rule and field in rule.adjust
+        },
     }
 
 

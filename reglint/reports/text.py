@@ -1,7 +1,7 @@
 """The text report: for each spec a heading with counts, then what is not a pass."""
 
 from collections import Counter
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Mapping, Sequence
 
 from reglint.finding import Finding, Outcome, Run, Verdict
 from reglint.printable import printable
@@ -42,6 +42,8 @@ def _spec(verdict: Verdict, options: Options) -> Iterator[str]:
     shown = [f for f in verdict.findings if options.everything or f.outcome is not Outcome.PASS]
     for finding in sorted(shown, key=lambda each: -each.outcome.rank):
         yield from _finding(verdict, finding, options)
+    for field, values in verdict.windows.items():
+        yield f"    would hold {_window(verdict, field, values)}"
     if shown:
         yield from (f"    assumed    {each.path}: {each.says}" for each in spec.assumptions)
     yield ""
@@ -87,6 +89,13 @@ def _corner(verdict: Verdict, corner: Mapping[str, float]) -> str:
     return ", ".join(f"{name} {quantity(value, units[name])}" for name, value in corner.items())
 
 
+def _window(verdict: Verdict, field: str, values: Sequence[float]) -> str:
+    if not values:
+        return f"no standard value of {field}: reglint window {verdict.spec.file} tells why"
+    unit = verdict.spec.kind.fields[field].unit
+    return f"{field} at {', '.join(quantity(value, unit) for value in values)}"
+
+
 def _shares(finding: Finding) -> str:
     return ", ".join(
         f"{each.path} {100.0 * each.share:.0f} % (line {each.span.line})" for each in finding.shares
@@ -108,8 +117,8 @@ def _summary(run: Run) -> Iterator[str]:
     rules = ", ".join(f"{run.count(each)} {each.value}" for each in reversed(Outcome))
     waived = f", {run.waived} waived" if run.waived else ""
     yield f"{_plural(len(run.verdicts), 'spec')}: {specs}; rules: {rules}{waived}."
-    if ends[Outcome.FAIL]:
-        yield "The standard values at which a failing spec would hold: reglint window FILE."
+    if any(each.outcome is Outcome.FAIL and not each.windows for each in run.verdicts):
+        yield "Standard values at which a failing spec would hold: reglint window FILE."
     if run.problems:
         yield f"{_plural(run.unreadable, 'file')} with something that could not be used."
     yield _SAFETY
