@@ -5,11 +5,14 @@ Diodes: Section S1, Table 4 (p. 270). Resistors: Section R2, Table 4 (p. 256).
 
 from collections.abc import Callable, Mapping
 
+import numpy as np
 import pytest
+from click.testing import CliRunner
 
+from reglint.cli import cli
 from reglint.finding import Finding, Run
 from reglint.formula import evaluate
-from reglint.functions import REAL
+from reglint.functions import REAL, Array
 from reglint.rulebook import Rulebook
 
 BOOK = Rulebook()
@@ -21,23 +24,56 @@ RESISTORS = POLICY.classes["resistor"]
 def number(style: str, name: str) -> float:
     """Return a figure of a resistor style."""
     formula = RESISTORS.styles[style][name]
-    return float(evaluate(formula.root, {}.__getitem__, REAL))
+    return float(evaluate(formula.root, dict[str, Array]().__getitem__, REAL))
 
 
-PRINTED = [style for style, figures in RESISTORS.styles.items() if "printed_zero_at" in figures]
+#: Style: power factor, T1, T2 and T3, as the table prints them. RCR and "others" are not
+#: here: their T2 is left to the formula.
+PRINTED = {
+    "RLR-100ppm": (0.6, 70, 118, 150),
+    "RLR-350ppm": (0.6, 70, 103, 125),
+    "RNX": (0.6, 125, 155, 175),
+    "RM": (0.6, 70, 118, 150),
+    "RZ": (0.6, 70, 103, 125),
+    "RBR-1%": (0.6, 125, 137, 145),
+    "RBR-0.5%": (0.35, 125, 132, 145),
+    "RBR-0.1%": (0.25, 125, 130, 145),
+    "RWR": (0.6, 25, 160, 250),
+    "RER": (0.6, 25, 160, 250),
+    "RTR": (0.6, 85, 124, 150),
+    "G311P672": (0.6, 70, 94, 110),
+    "G311P683": (0.6, 125, 185, 225),
+    "G311P742": (0.6, 125, 155, 175),
+}
 
 
 @pytest.mark.parametrize("style", PRINTED)
-def test_every_printed_t2_follows_from_t1_t3_and_the_factor(style: str) -> None:
-    """T2 = factor * (T3 - T1) + T1, to the whole degree the table prints."""
-    t1, t3 = number(style, "full_until"), number(style, "damaged_above")
-    computed = number(style, "factor") * (t3 - t1) + t1
-    assert computed == pytest.approx(number(style, "printed_zero_at"), abs=0.5)
+def test_a_resistor_style_has_its_printed_row(style: str) -> None:
+    """Power factor, T1, T2 and T3 are those of the table."""
+    names = ("factor", "full_until", "printed_zero_at", "damaged_above")
+    assert tuple(number(style, name) for name in names) == PRINTED[style]
 
 
-def test_all_fourteen_rows_with_a_printed_t2_are_there() -> None:
-    """The table's rows but for RCR and "others", whose T2 it leaves to a formula."""
-    assert len(PRINTED) == 14
+@pytest.mark.parametrize("style", PRINTED)
+def test_the_allowed_power_ends_at_the_printed_t2(style: str) -> None:
+    """T2 = factor * (T3 - T1) + T1, to the whole degree the table prints.
+
+    Half-way from T1 to the printed T2 half the power is left, within half a degree.
+    """
+    factor, t1, t2, t3 = PRINTED[style]
+    figures = {"factor": factor, "full_until": t1, "damaged_above": t3}
+    names = {f"style.{name}": figure for name, figure in figures.items()}
+    stated = {**names, "power_rating": 1.0, "ambient": (t1 + t2) / 2}
+    given = {name: np.array(value) for name, value in stated.items()}
+    formula = RESISTORS.allowances["power_allowed"].formula
+    allowed = evaluate(formula.root, given.__getitem__, REAL)
+    assert float(allowed) == pytest.approx(factor / 2, abs=0.5 * factor / (t2 - t1))
+
+
+def test_no_other_style_has_a_printed_t2() -> None:
+    """The rows are all fourteen of the table."""
+    found = {s for s, figures in RESISTORS.styles.items() if "printed_zero_at" in figures}
+    assert found == PRINTED.keys()
 
 
 def finding(run: Run, rule: str) -> Finding:
@@ -96,3 +132,28 @@ def test_a_film_chip_resistor_falls_from_70_to_118_degrees(
     assert judged(check, sample, changes, "resistor-dissipation").limit == pytest.approx(0.6)
     voltage = judged(check, sample, changes, "resistor-voltage").limit
     assert voltage == pytest.approx((0.6 * 470.0) ** 0.5)
+
+
+def test_a_reference_diode_keeps_the_junction_limit(
+    check: Callable[..., Run], sample: Callable[..., str]
+) -> None:
+    """The one row of a voltage reference diode is its junction: 125 °C of 175 °C."""
+    changes = {"zener.style": "reference"}
+    assert judged(check, sample, changes, "zener-junction-temperature").limit == 125.0
+
+
+@pytest.mark.parametrize(
+    "line",
+    [
+        "  source    NASA/TP-2003-212242 (EEE-INST-002), tables of 5/03, with Addendum 1.",
+        "Section S1, Table 4 (p. 270): voltage regulator, power 0.50.",
+        "Section S1, Table 4 (p. 270): voltage regulator, Zener current 0.75.",
+        "Section S1, Table 4 (p. 270): junction temperature 0.80; note 1: never above 125 °C or",
+        "Section R2, Table 4 (p. 256): full factor up to T1, then linearly to zero at T2",
+        "not for reference: the table has no power row for a voltage reference diode",
+    ],
+)
+def test_explain_tells_the_tables_and_pages(line: str) -> None:
+    """Whoever asks for the policy reads where each figure is printed."""
+    told = CliRunner().invoke(cli, ["explain", "eee-inst-002"]).output
+    assert " ".join(line.split()) in " ".join(told.split())

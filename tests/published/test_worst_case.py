@@ -22,7 +22,8 @@ Array = npt.NDArray[np.float64]
 Point = Mapping[str, Array]
 
 SPECS = 50
-SAMPLES_EACH = 20_000
+#: Points for each regulator under each of three conditions: 1,000,050 in all.
+POINTS = 6_667
 #: What the document allows: optimism of 1e-9, pessimism of 0.1 %.
 OPTIMISM, PESSIMISM = 1e-9, 1e-3
 
@@ -32,26 +33,41 @@ def knee(x: Array, m: float) -> Array:
     return np.log(x) if m == 1.0 else (x ** (1.0 - m) - 1.0) / (1.0 - m)
 
 
+def zener_voltage(p: Point, fixed: Mapping[str, float], current: Array, volts: Array) -> Array:
+    """Return the Zener voltage at a current, the junction warmed by ``volts`` times it."""
+    i_zt, heat = fixed["i_zt"], fixed["r_th"]
+    reference = 25.0 + fixed["settled"] * heat * p["v_zt"] * i_zt
+    drift = p["s"] * (p["t_a"] + heat * volts * current - reference)
+    bend = knee(np.maximum(current / i_zt, 1e-12), fixed["m"])
+    return p["v_zt"] + i_zt * p["z"] * bend + drift
+
+
+def headroom(p: Point, fixed: Mapping[str, float]) -> Array:
+    """Return what the supply has above the least at which the Zener has its minimum.
+
+    The Zener's own warming there by substitution, again and again, until it stands still.
+    """
+    least = np.full_like(p["v_s"], fixed["i_min"])
+    volts = p["v_zt"]
+    for _ in range(30):
+        volts = zener_voltage(p, fixed, least, volts)
+    return p["v_s"] - volts - p["r"] * (least + p["i_l"] + p["g"] * volts)
+
+
 def operating_point(p: Point, fixed: Mapping[str, float]) -> tuple[Array, Array]:
     """Return Zener current and output voltage, by bisection on the current."""
-    i_zt, m, heat = fixed["i_zt"], fixed["m"], fixed["r_th"]
-    reference = 25.0 + heat * p["v_zt"] * i_zt
 
     def node(current: Array) -> Array:
-        return p["v_s"] - p["r"] * (current + p["i_l"])
+        return (p["v_s"] - p["r"] * (current + p["i_l"])) / (1.0 + p["r"] * p["g"])
 
     def excess(current: Array) -> Array:
         volts = node(current)
-        junction = p["t_a"] + heat * volts * current
-        zener = (
-            p["v_zt"] + i_zt * p["z"] * knee(current / i_zt, m) + p["s"] * (junction - reference)
-        )
-        return volts - zener
+        return volts - zener_voltage(p, fixed, current, volts)
 
-    low = np.full_like(p["v_s"], 1e-12 * i_zt)
+    low = np.full_like(p["v_s"], 1e-12 * fixed["i_zt"])
     high = np.maximum(p["v_s"] / p["r"], low)
     off = excess(low) <= 0.0
-    for _ in range(100):
+    for _ in range(64):
         middle = 0.5 * (low + high)
         above = excess(middle) > 0.0
         low, high = np.where(above, middle, low), np.where(above, high, middle)
@@ -65,7 +81,7 @@ def power_share(t: Array, full: float, zero: float) -> Array:
 
 
 def margins(p: Point, fixed: Mapping[str, float]) -> dict[str, Array]:
-    """Return the margins of six rules at points."""
+    """Return the margins of seven rules at points."""
     current, volts = operating_point(p, fixed)
     allowed = fixed["p_z"] * power_share(p["t_a"], 50.0, 175.0)
     resistor = fixed["p_r"] * power_share(p["t_a"], 70.0, 155.0)
@@ -78,6 +94,7 @@ def margins(p: Point, fixed: Mapping[str, float]) -> dict[str, Array]:
         "resistor-dissipation": 1.0 - dissipated / resistor,
         "output-voltage-low": volts / fixed["v_min"] - 1.0,
         "output-voltage-high": 1.0 - volts / fixed["v_max"],
+        "supply-headroom": headroom(p, fixed) / p["v_s"],
     }
 
 
@@ -89,6 +106,19 @@ LOADS = {
     "resistor-dissipation": "any_load",
     "output-voltage-low": "any_load",
     "output-voltage-high": "any_load",
+    "supply-headroom": "loaded",
+}
+
+#: Our short names under the names reports use.
+NAMES = {
+    "supply.voltage": "v_s",
+    "series_resistor.resistance": "r",
+    "zener.voltage": "v_zt",
+    "zener.impedance": "z",
+    "zener.tempco": "s",
+    "ambient": "t_a",
+    "load.current": "i_l",
+    "load.conductance": "g",
 }
 
 
@@ -119,29 +149,37 @@ class Case:
             "m": float(np.log(z_zk / z) / np.log(i_zt / 0.001)),
             "r_th": random.uniform(50.0, 300.0),
             "i_min": random.uniform(0.001, 0.006),
+            "settled": 0.0 if seed % 4 == 1 else 1.0,
             "p_z": 1.0,
             "p_r": 2.0,
             "v_min": v_zt * 0.8,
             "v_max": v_zt * 1.15,
         }
         self.z_zk = z_zk
+        # Every other one feeds a resistive load as well; every fourth was read pulsed.
+        g = random.uniform(1e-4, 1e-3)
+        self.ranges["g"] = (0.6 * g, g) if seed % 2 else (0.0, 0.0)
 
     def text(self) -> str:
         """Return the regulator as a spec."""
         span = {
             name: f"{{min: {low!r} {unit}, max: {high!r} {unit}}}"
             for (name, (low, high)), unit in zip(
-                self.ranges.items(), ("V", "ohm", "V", "ohm", "V/K", "°C", "A"), strict=True
+                self.ranges.items(), ("V", "ohm", "V", "ohm", "V/K", "°C", "A", "S"), strict=True
             )
         }
-        fixed = self.fixed
+        fixed, (g_low, g_high) = self.fixed, self.ranges["g"]
+        probe = ""
+        if g_high:
+            least, most = 1.0 / g_high, 1.0 / g_low
+            probe = f", probe: {{resistance: {{min: {least!r} ohm, max: {most!r} ohm}}}}"
         return f"""
 format: 1
 kind: zener-shunt
 name: random
 supply: {{voltage: {span["v_s"]}}}
 output: {{voltage: {{min: {fixed["v_min"]!r} V, max: {fixed["v_max"]!r} V}}}}
-loads: {{load: {{current: {span["i_l"]}}}}}
+loads: {{load: {{current: {span["i_l"]}}}{probe}}}
 ambient: {span["t_a"]}
 series_resistor:
   resistance: {span["r"]}
@@ -156,6 +194,7 @@ zener:
   minimum_current: {fixed["i_min"]!r} A
   tempco: {span["s"]}
   thermal_resistance: {fixed["r_th"]!r} K/W
+  test: {"settled" if fixed["settled"] else "pulsed"}
   power_rating: 1 W
   derate_above: 50 °C
   junction_max: 175 °C
@@ -163,9 +202,10 @@ zener:
 
     def box(self, condition: str) -> dict[str, tuple[float, float]]:
         """Return the ranges under an operating condition."""
-        low, high = self.ranges["i_l"]
-        load = {"loaded": (low, high), "no_load": (0.0, 0.0), "any_load": (0.0, high)}[condition]
-        return {**self.ranges, "i_l": load}
+        loads = {name: self.ranges[name] for name in ("i_l", "g")}
+        least = {"loaded": 1.0, "no_load": 0.0, "any_load": 0.0}[condition]
+        most = 0.0 if condition == "no_load" else 1.0
+        return {**self.ranges, **{n: (least * lo, most * hi) for n, (lo, hi) in loads.items()}}
 
     def margin_at(self, rule: str) -> Callable[[Array], Array]:
         """Return a rule's margin as a function of a point of the unit cube."""
@@ -206,8 +246,7 @@ def test_no_sample_of_a_million_is_worse_than_reported(
     random = np.random.default_rng(20261201)
     for case, found in zip(cases, findings, strict=True):
         for condition in ("loaded", "no_load", "any_load"):
-            size = SAMPLES_EACH // 3
-            unit = random.random((len(case.ranges), size))
+            unit = random.random((len(case.ranges), POINTS))
             unit[:, ::2] = np.round(unit[:, ::2])
             box = case.box(condition).items()
             point = {n: lo + u * (hi - lo) for (n, (lo, hi)), u in zip(box, unit, strict=True)}
@@ -243,6 +282,23 @@ def test_a_global_optimiser_finds_the_same_worst_case(
         assert best.fun - reported <= PESSIMISM
 
 
+def test_the_worst_point_named_has_the_margin_reported(
+    cases: list[Case], findings: list[dict[str, Finding]]
+) -> None:
+    """No worst case is pessimistic: each is met at its corner, a point of the box."""
+    for case, found in zip(cases, findings, strict=True):
+        for rule, condition in LOADS.items():
+            corner = {NAMES[name]: value for name, value in (found[rule].corner or {}).items()}
+            box = case.box(condition)
+            for name, value in corner.items():
+                # A conductance is the inverse of the resistance stated, to a last digit.
+                slack = 1e-15 * abs(value)
+                assert box[name][0] - slack <= value <= box[name][1] + slack, name
+            point = {name: np.array([corner.get(name, low)]) for name, (low, _) in box.items()}
+            at_corner = float(margins(point, case.fixed)[rule][0])
+            assert found[rule].margin == pytest.approx(at_corner, rel=1e-9, abs=1e-9), rule
+
+
 def test_some_worst_cases_lie_inside_the_box(
     cases: list[Case], findings: list[dict[str, Finding]]
 ) -> None:
@@ -256,6 +312,17 @@ def test_some_worst_cases_lie_inside_the_box(
     assert inside >= 3
 
 
-def test_proofs_meet_the_worst_points(findings: list[dict[str, Finding]]) -> None:
+def test_every_verdict_without_resistive_loads_is_proven(
+    cases: list[Case], findings: list[dict[str, Finding]]
+) -> None:
     """Every rule is decided: a failure by its witness, the rest by a bound."""
-    assert all(found[rule].proven for found in findings for rule in LOADS)
+    plain = [f for case, f in zip(cases, findings, strict=True) if case.ranges["g"] == (0.0, 0.0)]
+    assert len(plain) == SPECS // 2
+    assert all(found[rule].proven for found in plain for rule in LOADS)
+
+
+def test_what_is_not_proven_is_rare_and_warns(findings: list[dict[str, Finding]]) -> None:
+    """With resistive loads a diode that may just turn off defies a proof: at most 1 % do."""
+    undecided = [f[rule] for f in findings for rule in LOADS if not f[rule].proven]
+    assert len(undecided) <= SPECS * len(LOADS) // 100
+    assert all(finding.outcome.value == "warn" for finding in undecided)
