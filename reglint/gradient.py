@@ -16,7 +16,7 @@ import numpy as np
 import numpy.typing as npt
 
 from reglint import interval
-from reglint.interval import Interval, hull, lift, where
+from reglint.interval import Interval, hull, lift, meet, where
 
 Array: TypeAlias = npt.NDArray[np.float64]
 Mask: TypeAlias = npt.NDArray[np.bool_]
@@ -250,16 +250,16 @@ def if_positive(test: Like, yes: Like, no: Like) -> Gradient:
 
 
 def agreeing(test: Like, other: Like, value: Like) -> Gradient:
-    """Return a value, drawn closer by another form of it that agrees where the test is positive.
+    """Return a value that is never above another, and equal to it where the test is positive.
 
-    There both forms enclose the same function, so its partials lie in both forms' partials.
+    Where it is equal both forms enclose the same function, so its partials lie in both's.
     """
     test, other, value = raised(test), raised(other), raised(value)
     closer = interval.agreeing(test.value, other.value, value.value)
     if value.partials is None or other.partials is None:
         return Gradient(closer, value.partials)
     both, own = _fitted(other.partials, closer), _fitted(value.partials, closer)
-    return Gradient(closer, interval.agreeing(test.value, both, own))
+    return Gradient(closer, where(test.value.low > 0.0, meet(own, both), own))
 
 
 def margin(slack: Like, scale: Like) -> Gradient:

@@ -314,9 +314,10 @@ def if_positive(test: Like, yes: Like, no: Like) -> Interval:
 
 
 def agreeing(test: Like, other: Like, value: Like) -> Interval:
-    """Return a value, drawn closer by another form of it that agrees where the test is positive."""
-    value = lift(value)
-    return where(lift(test).low > 0.0, meet(value, other), value)
+    """Return a value that is never above another, and equal to it where the test is positive."""
+    other = lift(other)
+    below = Interval(np.where(lift(test).low > 0.0, other.low, -np.inf), other.high)
+    return meet(value, below)
 
 
 def margin(slack: Like, scale: Like) -> Interval:

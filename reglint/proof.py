@@ -17,7 +17,7 @@ from reglint.functions import GRADIENTS, INTERVALS
 from reglint.gradient import Gradient, variable
 from reglint.interval import Interval, lift
 from reglint.values import Values
-from reglint.worstcase import Measure, Worst, at, narrowed, search
+from reglint.worstcase import Measure, Worst, at, improves, narrowed, search, slices
 
 Array: TypeAlias = npt.NDArray[np.float64]
 
@@ -26,8 +26,8 @@ TOLERANCE = 1e-3
 #: Rounds of halving in which that is tried, if wanted; then a bound that decides will do.
 _FINE_ROUNDS = 5
 #: Rounds, and pieces of one spec's box, before the proof is given up.
-_MOST_ROUNDS = 14
-_MOST_PIECES = 128
+_MOST_ROUNDS = 30
+_MOST_PIECES = 1024
 #: Boxes whose gradients are evaluated at once.
 _AT_ONCE = 1 << 12
 
@@ -63,19 +63,9 @@ def look(box: Box, measures: Sequence[Measure], enough: Sequence[float]) -> list
 
     ``enough`` is the value of each measure that its bound need not go beyond.
     """
-    parts = []
     with np.errstate(all="ignore"):
-        for start in range(0, len(box.specs), _AT_ONCE):
-            part = box.take(np.arange(start, min(start + _AT_ONCE, len(box.specs))))
-            parts.append(list(_lower_bounds(part, measures, enough)))
-    return [_look(box, each) for each in zip(*parts, strict=True)]
-
-
-def _look(box: Box, parts: Sequence[tuple[Array, Partials]]) -> Look:
-    bound = np.concatenate([bound for bound, _ in parts])
-    low = np.concatenate([partials[0] for _, partials in parts])
-    high = np.concatenate([partials[1] for _, partials in parts])
-    return Look(narrowed(box, (low, high)), bound)
+        bounds = _lower_bounds(box, measures, enough)
+        return [Look(narrowed(box, partials), bound) for bound, partials in bounds]
 
 
 def prove(box: Box, measure: Measure, enough: float, *, fine: bool) -> Proven:
@@ -116,9 +106,10 @@ def _proven(box: Box, measure: Measure, enough: float, fine_rounds: int) -> Prov
     for turn in range(_MOST_ROUNDS):
         ((least, partials),) = _lower_bounds(pieces, [measure], [np.inf])
         points = (pieces.low == pieces.high).all(axis=1)
-        found = _with_points(found, pieces, owner, measure, points & (least < found.value[owner]))
+        found = _with_middles(found, pieces, owner, measure, least < found.value[owner])
         target = _target(found.value, enough if turn >= fine_rounds else np.inf)
-        settled = points | (least >= target[owner]) | _crowded(owner, len(bound))
+        spent = (turn == _MOST_ROUNDS - 1) | _crowded(owner, len(bound))
+        settled = points | (least >= target[owner]) | spent
         np.minimum.at(bound, owner[settled], least[settled])
         rows = np.flatnonzero(~settled)
         if not len(rows):
@@ -126,27 +117,43 @@ def _proven(box: Box, measure: Measure, enough: float, fine_rounds: int) -> Prov
         pieces = narrowed(pieces.take(rows), (partials[0][rows], partials[1][rows]))
         steepness = np.maximum(-partials[0][rows], partials[1][rows])
         pieces, owner = _halved(pieces, owner[rows], steepness, ranges)
-    else:
-        np.minimum.at(bound, owner, -np.inf)
     return Proven(found.value, found.point, np.minimum(bound, found.value))
 
 
 def _target(value: Array, enough: float) -> Array:
     """Return where a bound is good enough: near the worst found, and on its side of zero.
 
-    With ``enough`` finite, also where it decides: what is broken needs no bound at all.
+    With ``enough`` finite, also where it decides.
     """
-    near = np.where((value >= 0.0) & (value < TOLERANCE), 0.0, value - TOLERANCE)
+    close = value - TOLERANCE * np.fmax(1.0, np.abs(value))
+    near = np.where((value >= 0.0) & (value < TOLERANCE), 0.0, close)
     if enough == np.inf:
         return near
     decides = np.where(value >= enough, enough, 0.0)
-    return np.where(value < 0.0, -np.inf, np.minimum(near, decides))
+    return np.where(value < 0.0, near, np.minimum(near, decides))
 
 
 def _lower_bounds(
     box: Box, measures: Sequence[Measure], enough: Sequence[float]
 ) -> Iterator[tuple[Array, Partials]]:
     """Yield what each measure cannot fall below in each box, and its partials there.
+
+    A few thousand boxes at once: many pieces of many specs must not fill the memory.
+    """
+    parts = [
+        list(_bounds_at_once(box.take(rows), measures, enough))
+        for rows in slices(np.arange(len(box.specs)), _AT_ONCE)
+    ]
+    for each in zip(*parts, strict=True):
+        low = np.concatenate([partials[0] for _, partials in each])
+        high = np.concatenate([partials[1] for _, partials in each])
+        yield np.concatenate([bound for bound, _ in each]), (low, high)
+
+
+def _bounds_at_once(
+    box: Box, measures: Sequence[Measure], enough: Sequence[float]
+) -> Iterator[tuple[Array, Partials]]:
+    """Yield the bounds and partials of few enough boxes.
 
     The measure's own enclosure; where that is not enough, the better of it and the mean
     value form around the middle.
@@ -179,19 +186,26 @@ def _intervals_at(box: Box, points: Array) -> Values[Interval]:
     return box.under_condition(Values(box.circuit, INTERVALS, {**fixed, **swept}))
 
 
-def _with_points(
-    found: Worst, pieces: Box, owner: npt.NDArray[np.intp], measure: Measure, rows: Array
+def _with_middles(
+    found: Worst,
+    pieces: Box,
+    owner: npt.NDArray[np.intp],
+    measure: Measure,
+    rows: npt.NDArray[np.bool_],
 ) -> Worst:
-    """Return the worst points found, with those that the proof came upon."""
-    for row in np.flatnonzero(rows):
-        piece = pieces.take(np.array([row]))
-        value = found.value.copy()
-        point = found.point.copy()
-        measured = at(piece, measure, piece.low[:, None, :])[0, 0]
-        if measured < value[owner[row]]:
-            value[owner[row]], point[owner[row]] = measured, piece.low[0]
-            found = Worst(value, point)
-    return found
+    """Return the worst points found, or the middles of some pieces where those are worse.
+
+    A measure that jumps is worst next to the jump, which no line from a corner may meet.
+    """
+    some = pieces.take(np.flatnonzero(rows))
+    middles = Interval(some.low, some.high).middle
+    measured = at(some, measure, middles[:, None, :])[:, 0]
+    worse = np.flatnonzero(improves(measured, found.value[owner[rows]]) | np.isnan(measured))
+    # The last of a spec's middles stays: the least, or one without a value, which sorts last.
+    last = worse[np.argsort(-measured[worse])]
+    value, point = found.value.copy(), found.point.copy()
+    value[owner[rows][last]], point[owner[rows][last]] = measured[last], middles[last]
+    return Worst(value, point)
 
 
 def _crowded(owner: npt.NDArray[np.intp], count: int) -> npt.NDArray[np.bool_]:

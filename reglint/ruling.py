@@ -1,7 +1,7 @@
 """What a rule comes to for one spec: the outcome, and the sentence that says why."""
 
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 from reglint import quantity
@@ -11,6 +11,7 @@ from reglint.finding import Finding, Outcome, Share
 from reglint.formula import Name, evaluate
 from reglint.functions import DIMENSIONS
 from reglint.kind import Kind
+from reglint.proof import TOLERANCE
 from reglint.rule import Rule
 from reglint.source import TOP
 from reglint.spec import Spec
@@ -41,7 +42,12 @@ def outcome(rule: Rule, spec: Spec, margin: float, bound: float) -> Outcome:
         return Outcome.WARN if rule.at_worst_warn else Outcome.FAIL
     if not margin >= rule.warn_margin - _ROUNDING or neglects(rule, spec):
         return Outcome.WARN
-    return Outcome.PASS if bound >= -_ROUNDING else Outcome.WARN
+    return Outcome.PASS if bound >= _assured(rule) else Outcome.WARN
+
+
+def _assured(rule: Rule) -> float:
+    """Return the bound a pass needs: the reserve is proven as near as proofs go."""
+    return max(rule.warn_margin - TOLERANCE, 0.0) - _ROUNDING
 
 
 def neglects(rule: Rule, spec: Spec) -> tuple[str, ...]:
@@ -74,7 +80,7 @@ def finding(rule: Rule, spec: Spec, worst: WorstPoint) -> Finding:
         bound=_bound(rule, worst),
         corner=worst.corner,
         shares=worst.shares,
-        notes=(*neglects(rule, spec), *_gap(worst)),
+        notes=(*neglects(rule, spec), *_gap(rule, worst)),
     )
 
 
@@ -83,11 +89,16 @@ def _proven(worst: WorstPoint) -> bool:
     return worst.margin < -_ROUNDING or worst.bound >= -_ROUNDING
 
 
-def _gap(worst: WorstPoint) -> tuple[str, ...]:
-    """Return what is to be said of a worst case that is not proven."""
-    if math.isnan(worst.margin) or _proven(worst):
-        return ()
-    return (f"not proven: the margin is known only to be at least {percent(worst.bound)}",)
+def _gap(rule: Rule, worst: WorstPoint) -> Iterator[str]:
+    """Yield what is to be said of a worst case that the proof did not come close to."""
+    known = f"the margin is known only to be at least {percent(worst.bound)}"
+    if worst.margin < -_ROUNDING:
+        if worst.bound < worst.margin - 2.0 * TOLERANCE * max(1.0, abs(worst.margin)):
+            yield f"worse may be found: {known}"
+    elif worst.bound < -_ROUNDING and not math.isnan(worst.margin):
+        yield f"not proven: {known}"
+    elif worst.margin >= rule.warn_margin and worst.bound < _assured(rule):
+        yield f"reserve not proven: {known}"
 
 
 def _bound(rule: Rule, worst: WorstPoint) -> float | None:

@@ -41,7 +41,7 @@ def _heading(spec: Spec, circuit: Circuit) -> Iterator[str]:
     yield "Under each formula stand the nominal values; least and most are over the box."
     yield "knee(x, m) = (x ** (1 - m) - 1) / (1 - m), log(x) at m = 1; falling(x, a, b) falls"
     yield "from 1 at a to 0 at b; if_positive(x, a, b) is a where x > 0, else b;"
-    yield "agreeing(x, a, b) is b, which equals a where x > 0; log is natural."
+    yield "agreeing(x, a, b) is b: never above a, and equal to it where x > 0; log is natural."
     yield ""
 
 

@@ -303,10 +303,10 @@ def test_a_choice() -> None:
 
 
 def test_an_agreeing_form_draws_closer_where_it_holds() -> None:
-    """Where the test is undecided the value stays as it is."""
+    """Where the test is undecided the other form only caps the value."""
     test = between([1.0, -1.0], [2.0, 2.0])
-    closer = interval.agreeing(test, between(0.0, 2.0), between(1.0, 3.0))
-    assert (closer.low.tolist(), closer.high.tolist()) == ([1.0, 1.0], [2.0, 3.0])
+    closer = interval.agreeing(test, between(1.0, 2.0), between(0.0, 3.0))
+    assert (closer.low.tolist(), closer.high.tolist()) == ([1.0, 0.0], [2.0, 2.0])
 
 
 def test_no_slack_is_no_margin_even_on_a_limit_of_zero() -> None:

@@ -16,12 +16,16 @@ from hypothesis import strategies as st
 from reglint.finding import Finding, Outcome
 from reglint.judge import Wanted, judge
 from reglint.project import Project
+from reglint.proof import TOLERANCE
 
 Findings = Mapping[str, Finding]
 Judge = Callable[[list["Regulator"]], list[Findings]]
 
 #: A difference of margins that may be rounding.
 ROUNDING = 1e-9
+#: Rules whose measure jumps where the diode turns off: next to the jump the worst point is
+#: looked for no closer than the proof's own tolerance.
+JUMPING = {"line-regulation", "ripple-rejection"}
 #: Swept fields and their units; a load's resistance and current among them.
 UNITS = {
     "supply": "V",
@@ -36,9 +40,6 @@ UNITS = {
 #: Rules whose measure the ranges do not contain: two compare nominal values, and the third
 #: sets the loads to the ends of their own range, which a single value does not have.
 APART = {"preferred-value", "zener-test-points", "load-regulation"}
-#: Rules whose measure jumps where the diode turns off. They pass no more than others without
-#: a proof, but the margin told may be worse still next to the jump.
-JUMPING = {"line-regulation", "ripple-rejection"}
 #: Rules whose limit is the same everywhere, so that their bound holds for every value; the
 #: sign tells on which side.
 STEADY = {"minimum-zener-current": 1.0, "output-voltage-low": 1.0, "output-voltage-high": -1.0}
@@ -168,11 +169,12 @@ def judged(tmp_path_factory: pytest.TempPathFactory) -> Judge:
 
 def never_better(wide: Findings, narrow: Findings) -> None:
     """Demand that no rule's margin is better in wider ranges."""
-    for rule in wide.keys() - APART - JUMPING:
+    for rule in wide.keys() - APART:
         inside, outside = narrow[rule].margin, wide[rule].margin
         if outside is not None:
             assert inside is not None, rule
-            assert outside <= inside + ROUNDING * max(1.0, abs(inside)), rule
+            slack = TOLERANCE if rule in JUMPING else ROUNDING
+            assert outside <= inside + slack * max(1.0, abs(inside)), rule
 
 
 def not_beyond(bound: float | None, value: float | None, sign: float) -> None:
@@ -191,7 +193,7 @@ def test_no_point_of_the_box_is_worse_than_reported(
     inside = [points(each, seed, EACH) for each in drawn]
     found = judged([*drawn, *chain.from_iterable(inside)])
     for row, whole in enumerate(found[: len(drawn)]):
-        assert len(whole.keys() - APART - JUMPING) == 13
+        assert len(whole.keys() - APART) == 15
         for part in found[len(drawn) :][EACH * row : EACH * (row + 1)]:
             never_better(whole, part)
             for rule, sign in STEADY.items():
@@ -214,7 +216,16 @@ def test_what_fails_at_a_point_never_passes(
                     assert whole[rule].outcome is not Outcome.PASS, rule
 
 
-@pytest.mark.xfail(reason="a failing margin is not searched further: -742 % is told, -773 % found")
+@few(8)
+@given(st.lists(regulators(), min_size=25, max_size=25))
+def test_everything_is_decided(judged: Judge, drawn: list[Regulator]) -> None:
+    """Two hundred regulators, starved ones among them: each rule has its witness or its proof."""
+    for found in judged(drawn):
+        evaluated = [each for each in found.values() if each.margin is not None]
+        assert len(evaluated) >= 16
+        assert [each.rule for each in evaluated if not each.proven] == []
+
+
 def test_a_jump_between_the_corners_is_met(judged: Judge) -> None:
     """Line regulation is worst just where the diode turns off, at no corner of these ranges."""
     exact = {"resistance": 875.0, "impedance": 1.0, "tempco": 0.0, "ambient": 25.0}
