@@ -30,11 +30,13 @@ from reglint.sheet import sheet as calculation
 from reglint.spec_schema import editor_schema
 from reglint.starter import starter as commented
 from reglint.window import told, trials
+from reglint.yield_ import DISTRIBUTIONS, Draw
 
 F = TypeVar("F", bound=Callable[..., Any])
 
 _PATHS = click.Path(path_type=Path)
 _GATES = ("fail", "warn", "never")
+_YIELD = "Draw N builds of each spec, and tell how many break a rule."
 
 
 class _Today(click.ParamType):  # type: ignore[type-arg]  # its parameter is new in click 8.2
@@ -84,6 +86,15 @@ def cli() -> None:
     metavar="NAME:FIELD=TEXT",
     help="Try a value without editing the file, as NAME:zener.part=1N4734A.",
 )
+@click.option("--yield", "builds", type=click.IntRange(1, 1_000_000), metavar="N", help=_YIELD)
+@click.option("--seed", type=click.IntRange(0), default=1, show_default=True, help="For --yield.")
+@click.option(
+    "--distribution",
+    type=click.Choice(list(DISTRIBUTIONS)),
+    default="uniform",
+    show_default=True,
+    help="For --yield, of figures whose spec states none.",
+)
 @click.option("--today", type=_Today(), help="The day waivers are judged on, as 2027-06-30.")
 @click.option("--colour/--no-colour", default=None, help="Colour, whatever the terminal says.")
 @click.pass_context
@@ -96,6 +107,9 @@ def check(
     derating: str | None,
     everything: bool,
     suppositions: tuple[Supposition, ...],
+    builds: int | None,
+    seed: int,
+    distribution: str,
     today: date | None,
     colour: bool | None,
 ) -> None:
@@ -106,10 +120,12 @@ def check(
         said = "is not tracked by git yet: a check elsewhere will not see it"
         click.echo(f"reglint: {project.show(path)} {said}", err=True)
     day = today or date.today()  # noqa: DTZ011 -- a waiver ends on the reader's own day
-    wanted = Wanted(day, everything, reports.wants_extents(report))
+    draw = Draw(builds, seed, distribution) if builds else None
+    wanted = Wanted(day, everything, reports.wants_extents(report), draw)
     run = project.check(specs, wanted)
     _check_supposed(project, run)
-    options = Options(everything, out is None and _coloured(colour))
+    drawn = f"from seed {seed}, {distribution} where a spec states nothing else" if draw else ""
+    options = Options(everything, out is None and _coloured(colour), drawn)
     write(reports.renderer(report)(run, options), out)
     context.exit(_status(run, gate or project.gate()))
 

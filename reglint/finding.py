@@ -3,6 +3,8 @@
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from enum import Enum
+from math import sqrt
+from statistics import NormalDist
 
 from reglint.kind import Kind
 from reglint.rule import Rule
@@ -77,6 +79,29 @@ class Extent:
 
 
 @dataclass(frozen=True, slots=True)
+class Yield:
+    """How many of the drawn builds break a rule."""
+
+    #: The rule's name; empty for all rules together.
+    rule: str
+    broken: int
+    builds: int
+
+    def interval(self, confidence: float = 0.95) -> tuple[float, float]:
+        """Return what the fraction of broken builds lies between: Wilson's score interval.
+
+        Source: E. B. Wilson, Probable inference, the law of succession, and statistical
+        inference, J. Am. Stat. Assoc. 22 (1927) 209-212.
+        """
+        score = NormalDist().inv_cdf(0.5 + 0.5 * confidence)
+        count, found = self.builds, self.broken / self.builds
+        scale = 1.0 + score**2 / count
+        middle = (found + score**2 / (2.0 * count)) / scale
+        half = score / scale * sqrt(found * (1.0 - found) / count + (score / (2.0 * count)) ** 2)
+        return max(0.0, middle - half), min(1.0, middle + half)
+
+
+@dataclass(frozen=True, slots=True)
 class Verdict:
     """Everything said about one spec."""
 
@@ -90,6 +115,8 @@ class Verdict:
     extents: tuple[Extent, ...] = ()
     #: For a failing spec, the standard values of its adjustable fields at which no rule fails.
     windows: Mapping[str, tuple[float, ...]] = field(default_factory=dict)
+    #: If wanted, the builds that break a rule, by rule; the last is of all rules together.
+    yields: tuple[Yield, ...] = ()
 
     @property
     def kind(self) -> Kind:

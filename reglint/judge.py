@@ -2,7 +2,7 @@
 
 from collections import defaultdict
 from collections.abc import Iterable, Iterator, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import date
 
 from reglint import ruling, waiver
@@ -18,6 +18,7 @@ from reglint.rule import Rule
 from reglint.shares import shares
 from reglint.spec import Spec
 from reglint.worstcase import Array, at
+from reglint.yield_ import Draw, yields
 
 
 @dataclass(frozen=True, slots=True)
@@ -29,6 +30,8 @@ class Wanted:
     everything: bool = False
     #: The range of every quantity under every condition.
     extents: bool = False
+    #: How builds are drawn for the yield, if at all.
+    draw: Draw | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,8 +69,10 @@ def _judge_batch(batch: Sequence[Case], wanted: Wanted) -> Iterator[Verdict]:
     boxes = {name: box_of(circuit, each, specs, numbers) for name, each in conditions.items()}
     ranges = extents(boxes) if wanted.extents else [()] * len(specs)
     findings = _findings(boxes, rules, wanted)
-    for spec, found, range_ in zip(specs, findings, ranges, strict=True):
-        yield _verdict(spec, rules, found, range_, wanted)
+    for row, (spec, found, range_) in enumerate(zip(specs, findings, ranges, strict=True)):
+        listed = [each for each in found.values() if each is not None]
+        drawn = yields(boxes, row, rules, listed, wanted.draw) if wanted.draw else ()
+        yield replace(_verdict(spec, rules, found, range_, wanted), yields=drawn)
 
 
 def _verdict(

@@ -1,6 +1,6 @@
 """Reading a spec: from the document and its kind to typed values, or to complaints."""
 
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import replace
 from datetime import date
 
@@ -10,6 +10,7 @@ from reglint.draft import Context, Draft
 from reglint.errors import QuantityError
 from reglint.figure import READERS, Misread, check_bounds
 from reglint.kind import Field, Kind
+from reglint.nearest import hint
 from reglint.part import Part
 from reglint.source import Complaint, Span
 from reglint.spec import Spec, Term, Waiver
@@ -39,15 +40,21 @@ def read_spec(
     _check_items(draft)
     waivers = tuple(_waivers(draft))
     _widen(draft)
+    distributions = dict(_distributions(draft))
     told = {each.span for each in unfit}
     complaints = [*unfit, *(each for each in draft.complaints if each.span not in told)]
     if complaints:
         return None, sorted(complaints, key=lambda each: each.span)
     _total(draft)
-    return _spec(draft, waivers, context), []
+    return _spec(draft, waivers, distributions, context), []
 
 
-def _spec(draft: Draft, waivers: tuple[Waiver, ...], context: Context) -> Spec:
+def _spec(
+    draft: Draft,
+    waivers: tuple[Waiver, ...],
+    distributions: Mapping[str, str],
+    context: Context,
+) -> Spec:
     texts = plain(draft.root)
     components = draft.kind.components
     styles = {name: draft.texts.get(f"{name}.style", "") for name in components}
@@ -65,6 +72,7 @@ def _spec(draft: Draft, waivers: tuple[Waiver, ...], context: Context) -> Spec:
         assumptions=tuple(draft.assumptions),
         neglected=draft.neglected,
         waivers=waivers,
+        distributions=distributions,
     )
 
 
@@ -183,6 +191,17 @@ def _total(draft: Draft) -> None:
 
 def _is(path: str, group: str, name: str) -> bool:
     return path.startswith(f"{group}.") and path.endswith(f".{name}") and path.count(".") > 1
+
+
+def _distributions(draft: Draft) -> Iterator[tuple[str, str]]:
+    """Yield the distribution of each figure that states one; it must be a figure with a range."""
+    known = {term.path for terms in draft.swept.values() for term in terms}
+    for path, entry in section(draft.root, "distributions").entries.items():
+        if path not in known:
+            message = f"{path} is no figure with a range{hint(path, known)}"
+            draft.complain("distributions", message, entry.key)
+        elif isinstance(entry.value, Scalar):
+            yield path, entry.value.text
 
 
 def _waivers(draft: Draft) -> Iterator[Waiver]:

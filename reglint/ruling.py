@@ -17,7 +17,7 @@ from reglint.source import TOP
 from reglint.spec import Spec
 
 #: A margin this little below zero is rounding, not a break.
-_ROUNDING = 1e-12
+ROUNDING = 1e-12
 
 
 @dataclass(frozen=True, slots=True)
@@ -38,16 +38,16 @@ def outcome(rule: Rule, spec: Spec, margin: float, bound: float) -> Outcome:
 
     A margin that is not a number never passes.
     """
-    if margin < -_ROUNDING:
+    if margin < -ROUNDING:
         return Outcome.WARN if rule.at_worst_warn else Outcome.FAIL
-    if not margin >= rule.warn_margin - _ROUNDING or neglects(rule, spec):
+    if not margin >= rule.warn_margin - ROUNDING or neglects(rule, spec):
         return Outcome.WARN
     return Outcome.PASS if bound >= _assured(rule) else Outcome.WARN
 
 
 def _assured(rule: Rule) -> float:
     """Return the bound a pass needs: the reserve is proven as near as proofs go."""
-    return max(rule.warn_margin - TOLERANCE, 0.0) - _ROUNDING
+    return max(rule.warn_margin - TOLERANCE, 0.0) - ROUNDING
 
 
 def neglects(rule: Rule, spec: Spec) -> tuple[str, ...]:
@@ -86,16 +86,16 @@ def finding(rule: Rule, spec: Spec, worst: WorstPoint) -> Finding:
 
 def _proven(worst: WorstPoint) -> bool:
     """Tell whether the verdict is certain: broken by a witness, or held by the bound."""
-    return worst.margin < -_ROUNDING or worst.bound >= -_ROUNDING
+    return worst.margin < -ROUNDING or worst.bound >= -ROUNDING
 
 
 def _gap(rule: Rule, worst: WorstPoint) -> Iterator[str]:
     """Yield what is to be said of a worst case that the proof did not come close to."""
     known = f"the margin is known only to be at least {percent(worst.bound)}"
-    if worst.margin < -_ROUNDING:
+    if worst.margin < -ROUNDING:
         if worst.bound < worst.margin - 2.0 * TOLERANCE * max(1.0, abs(worst.margin)):
             yield f"worse may be found: {known}"
-    elif worst.bound < -_ROUNDING and not math.isnan(worst.margin):
+    elif worst.bound < -ROUNDING and not math.isnan(worst.margin):
         yield f"not proven: {known}"
     elif worst.margin >= rule.warn_margin and worst.bound < _assured(rule):
         yield f"reserve not proven: {known}"

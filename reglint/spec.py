@@ -71,6 +71,8 @@ class Spec:
     #: Fields that were neglected, and what a report must say about it.
     neglected: Mapping[str, str]
     waivers: tuple[Waiver, ...]
+    #: How a stated figure's builds are spread between its ends, by path, where stated.
+    distributions: Mapping[str, str]
 
     @property
     def line(self) -> int:

@@ -53,6 +53,12 @@ def _common(kind_names: Iterable[str]) -> dict[str, Schema]:
             "description": "Rules whose findings are accepted for a time, by the rule's name.",
             "additionalProperties": _WAIVER,
         },
+        "distributions": {
+            "type": "object",
+            "description": "How a figure's builds are spread, for --yield, by its dotted path.",
+            "additionalProperties": {"enum": ["uniform", "normal"]},
+            "examples": [{"series_resistor.resistance": "normal"}],
+        },
     }
 
 

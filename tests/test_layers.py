@@ -23,7 +23,7 @@ LAYERS = [
     ["rulebook", "settings", "spec", "starter"],
     ["draft", "figure", "absent", "reader"],
     ["box", "worstcase", "proof", "margin"],
-    ["finding", "shares", "extent", "ruling", "waiver", "judge"],
+    ["finding", "shares", "extent", "ruling", "yield_", "waiver", "judge"],
     ["window", "project", "sheet", "explain", "catalogue", "output", "reports"],
     ["cli"],
     ["__main__"],

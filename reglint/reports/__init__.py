@@ -20,6 +20,8 @@ class Options:
     everything: bool = False
     #: Outcome words are coloured.
     colour: bool = False
+    #: How builds were drawn for the yield, in words; empty where none were.
+    drawn: str = ""
 
 
 Renderer: TypeAlias = Callable[[Run, Options], str]

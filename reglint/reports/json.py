@@ -5,7 +5,7 @@ import math
 from typing import Any
 
 from reglint import __version__
-from reglint.finding import Extent, Finding, Outcome, Run, Share, Verdict
+from reglint.finding import Extent, Finding, Outcome, Run, Share, Verdict, Yield
 from reglint.reports import Options
 from reglint.source import Problem
 
@@ -43,6 +43,19 @@ def _spec(verdict: Verdict) -> dict[str, Any]:
         "quantities": {_key(each): _extent(each) for each in verdict.extents},
         "findings": [_finding(each, verdict) for each in verdict.findings],
         "skipped": list(verdict.skipped),
+        **({"yield": [_yield(each) for each in verdict.yields]} if verdict.yields else {}),
+    }
+
+
+def _yield(drawn: Yield) -> dict[str, Any]:
+    """Return how many builds break a rule; without a rule's name, any of the rules."""
+    low, high = drawn.interval()
+    return {
+        "rule": drawn.rule or None,
+        "broken": drawn.broken,
+        "builds": drawn.builds,
+        "least": _number(low),
+        "most": _number(high),
     }
 
 

@@ -3,7 +3,7 @@
 from collections import Counter
 from collections.abc import Iterator, Mapping, Sequence
 
-from reglint.finding import Finding, Outcome, Run, Verdict
+from reglint.finding import Finding, Outcome, Run, Verdict, Yield
 from reglint.printable import printable
 from reglint.quantity import render as quantity
 from reglint.reports import Options
@@ -24,7 +24,7 @@ def render(run: Run, options: Options) -> str:
     for problem in run.problems:
         place = f"{problem.file}, line {problem.span.line}, column {problem.span.column}"
         lines += [f"{_word('unreadable', options)}  {place}", f"    {problem.message}", ""]
-    lines += _summary(run)
+    lines += _summary(run, options)
     return "".join(f"{_safe(line, options)}\n" for line in lines)
 
 
@@ -44,6 +44,7 @@ def _spec(verdict: Verdict, options: Options) -> Iterator[str]:
         yield from _finding(verdict, finding, options)
     for field, values in verdict.windows.items():
         yield f"    would hold {_window(verdict, field, values)}"
+    yield from (f"    builds     {_yield(each)}" for each in verdict.yields)
     if shown:
         yield from (f"    assumed    {each.path}: {each.says}" for each in spec.assumptions)
     yield ""
@@ -96,6 +97,12 @@ def _window(verdict: Verdict, field: str, values: Sequence[float]) -> str:
     return f"{field} at {', '.join(quantity(value, unit) for value in values)}"
 
 
+def _yield(drawn: Yield) -> str:
+    low, high = (100.0 * end for end in drawn.interval())
+    count = f"{drawn.broken} of {drawn.builds} break {drawn.rule or 'any of these rules'}"
+    return f"{count} ({low:.3g} % to {high:.3g} % of all builds, at 95 % confidence)"
+
+
 def _shares(finding: Finding) -> str:
     return ", ".join(
         f"{each.path} {100.0 * each.share:.0f} % (line {each.span.line})" for each in finding.shares
@@ -111,7 +118,7 @@ def _word(word: str, options: Options) -> str:
     return f"\x1b[{_COLOURS[word]}m{word}\x1b[0m" if options.colour else word
 
 
-def _summary(run: Run) -> Iterator[str]:
+def _summary(run: Run, options: Options) -> Iterator[str]:
     ends = Counter(verdict.outcome for verdict in run.verdicts)
     specs = ", ".join(f"{ends[each]} {each.value}" for each in reversed(Outcome))
     rules = ", ".join(f"{run.count(each)} {each.value}" for each in reversed(Outcome))
@@ -121,6 +128,8 @@ def _summary(run: Run) -> Iterator[str]:
         yield "Standard values at which a failing spec would hold: reglint window FILE."
     if run.problems:
         yield f"{_plural(run.unreadable, 'file')} with something that could not be used."
+    if options.drawn:
+        yield f"Builds were drawn {options.drawn}; they never change an outcome."
     yield _SAFETY
 
 
