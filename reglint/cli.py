@@ -24,6 +24,7 @@ from reglint.kind import Kind
 from reglint.nearest import hint
 from reglint.output import write
 from reglint.project import Home, Project, Supposition
+from reglint.relaxation import told as give_way
 from reglint.reports import Options
 from reglint.schema import KNOWLEDGE, knowledge_schema
 from reglint.sheet import sheet as calculation
@@ -189,7 +190,9 @@ def window(spec: Path, field: str | None, name: str | None, derating: str | None
             if not (tried := trials(case.spec, each)):
                 said = "with a tolerance, so no series is meant"
                 raise UsageError(f"{case.spec.name} states no {each} {said}")
-            write(told(case.spec, project.window(case, each, tried, today)), None)
+            found = project.window(case, each, tried, today)
+            relaxed = [] if found.holding() else project.relaxations(case, found, today)
+            write(told(case.spec, found) + give_way(relaxed, found.unit), None)
 
 
 @cli.command()

@@ -13,7 +13,7 @@ from reglint.finding import Extent, Finding, Outcome, Verdict
 from reglint.formula import Formula
 from reglint.kind import Condition
 from reglint.margin import Margin
-from reglint.proof import Look, Proven, look, prove
+from reglint.proof import Care, Look, Proven, look, prove
 from reglint.rule import Rule
 from reglint.shares import shares
 from reglint.spec import Spec
@@ -32,6 +32,8 @@ class Wanted:
     extents: bool = False
     #: How builds are drawn for the yield, if at all.
     draw: Draw | None = None
+    #: How far worst cases are followed, where no bound is shown.
+    care: Care = Care.TOLD
 
 
 @dataclass(frozen=True, slots=True)
@@ -151,8 +153,8 @@ def _judged(
         yield row, ruling.bare_pass(rule)
     if unclear:
         part = box.take(unclear)
-        fine = wanted.everything or wanted.extents
-        proven = prove(part, Margin(rule), rule.warn_margin, fine=fine)
+        care = Care.SHOWN if wanted.everything or wanted.extents else wanted.care
+        proven = prove(part, Margin(rule), rule.warn_margin, care)
         points = _worst_points(part, rule, proven)
         yield from zip(
             unclear,

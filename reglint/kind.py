@@ -17,6 +17,8 @@ T = TypeVar("T")
 
 #: The roles whose values are text, not numbers.
 WORDS = ("text", "choice")
+#: The roles whose values are single figures.
+FIGURES = ("rating", "limit", "limits")
 
 
 @dataclass(frozen=True, slots=True)
@@ -143,6 +145,14 @@ class Kind:
     #: A complete spec that passes every rule.
     sample: MappingNode
     file: str
+
+    def field(self, path: str) -> Field | None:
+        """Return the field at a dotted path, an end of one, or one of a named item's fields."""
+        group, _, rest = path.partition(".")
+        item = f"{group}.*.{rest.partition('.')[2]}"
+        whole, _, end = path.rpartition(".")
+        limits = self.fields.get(whole) if end in ("min", "max") else None
+        return self.fields.get(path) or self.fields.get(item) or limits
 
     @cached_property
     def stated_names(self) -> Mapping[str, Dimension]:

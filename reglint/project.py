@@ -17,8 +17,11 @@ from reglint.files import Folder, read_bytes
 from reglint.finding import Outcome, Run, Verdict
 from reglint.judge import Case, Wanted, judge
 from reglint.kind import Kind
+from reglint.lever import levers
 from reglint.nearest import hint
+from reglint.proof import Care
 from reglint.reader import read_spec
+from reglint.relaxation import Move, Relaxation, nearest, verified
 from reglint.rulebook import Rulebook
 from reglint.schema import Schema, complaints
 from reglint.settings import NAME, Settings, read_settings, root_above
@@ -152,8 +155,36 @@ class Project:
 
     def window(self, case: Case, field: str, tried: Mapping[float, str], today: date) -> Window:
         """Return what each value tried of one field comes to."""
-        variants = self.variants(case, field, tried.values())
-        return window_of(case.spec, field, list(tried), judge(variants, Wanted(today)))
+        changes = [{field: text} for text in tried.values()]
+        verdicts = self._judged_variants(case, changes, Wanted(today, care=Care.DECIDED))
+        return window_of(case.spec, field, list(tried), verdicts)
+
+    def relaxations(self, case: Case, window: Window, today: date) -> list[Relaxation]:
+        """Return what may give way where no standard value holds, each figure alone."""
+        tried = trials(case.spec, window.field)
+
+        def holding(
+            moves: Sequence[Move], values: Sequence[float], care: Care
+        ) -> list[tuple[float, ...]]:
+            pairs = [(lever, to, value) for lever, to in moves for value in values]
+            changes = [{each.path: each.text(to), window.field: tried[v]} for each, to, v in pairs]
+            verdicts = self._judged_variants(case, changes, Wanted(today, care=care))
+            rows = (verdicts[at : at + len(values)] for at in range(0, len(pairs), len(values)))
+            return [window_of(case.spec, window.field, values, row).holding() for row in rows]
+
+        rules = [case.rules[each] for each in window.clash()]
+        some = levers(case.spec, case.circuit, rules, window.field)
+        found = nearest(some, lambda moves: holding(moves, window.gap(), Care.SEARCHED))
+        return list(verified(found, lambda moves: holding(moves, list(tried), Care.DECIDED)))
+
+    def _judged_variants(
+        self, case: Case, changes: Sequence[Mapping[str, str]], wanted: Wanted
+    ) -> list[Verdict | None]:
+        """Return the verdict on a spec under each change; none on one that is unsound."""
+        variants = self.variants(case, changes)
+        sound = [each for each in variants if each is not None]
+        verdicts = iter(judge(sound, wanted))
+        return [None if each is None else next(verdicts) for each in variants]
 
     def problems(self) -> list[Problem]:
         """Return what is wrong with the settings and knowledge met so far."""
@@ -187,12 +218,16 @@ class Project:
                 self.used.add(each)
         return document
 
-    def variants(self, case: Case, field: str, texts: Iterable[str]) -> list[Case]:
-        """Return a spec once for each text in place of one field's; it must have been sound."""
+    def variants(self, case: Case, changes: Iterable[Mapping[str, str]]) -> list[Case | None]:
+        """Return a spec once for each change, texts by path; none for one that is unsound."""
         home, found = self.home(self.folder / case.spec.file), list[Complaint]()
-        documents = (with_value(Document(case.spec.root, 1), field, text) for text in texts)
-        cases = [self._case(each, home, case.spec.file, found) for each in documents]
-        return [each for each in cases if each is not None]
+        cases = []
+        for change in changes:
+            document = Document(case.spec.root, 1)
+            for field, text in change.items():
+                document = with_value(document, field, text)
+            cases.append(self._case(document, home, case.spec.file, found))
+        return cases
 
     def _case(
         self, document: Document, home: Home, shown: str, found: list[Complaint]

@@ -7,6 +7,7 @@ is left is halved, until the bound meets the worst point found or the budget end
 
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
+from enum import Enum
 from typing import TypeAlias
 
 import numpy as np
@@ -23,13 +24,27 @@ Array: TypeAlias = npt.NDArray[np.float64]
 
 #: How far the bound may stay below the worst point: a fraction of the limit, for margins.
 TOLERANCE = 1e-3
-#: Rounds of halving in which that is tried, if wanted; then a bound that decides will do.
-_FINE_ROUNDS = 5
+#: Rounds of halving in which that is tried for bounds that are shown; then one that decides
+#: will do.
+_SHOWN_ROUNDS = 5
 #: Rounds, and pieces of one spec's box, before the proof is given up.
 _MOST_ROUNDS = 30
 _MOST_PIECES = 1024
 #: Boxes whose gradients are evaluated at once.
 _AT_ONCE = 1 << 12
+
+
+class Care(Enum):
+    """How far a worst case is followed."""
+
+    #: To the worst point found; nothing is proven.
+    SEARCHED = "searched"
+    #: Until it is decided whether the margin is enough, too little, or broken.
+    DECIDED = "decided"
+    #: Until a broken margin is known as closely as it is told.
+    TOLD = "told"
+    #: Until every bound is close to the worst point, so that it can be shown.
+    SHOWN = "shown"
 
 
 #: Least and greatest partials, each of shape (s, n).
@@ -68,14 +83,16 @@ def look(box: Box, measures: Sequence[Measure], enough: Sequence[float]) -> list
         return [Look(narrowed(box, partials), bound) for bound, partials in bounds]
 
 
-def prove(box: Box, measure: Measure, enough: float, *, fine: bool) -> Proven:
+def prove(box: Box, measure: Measure, enough: float, care: Care = Care.TOLD) -> Proven:
     """Return the worst case of a measure over each spec's narrowed box, searched and proven.
 
-    ``enough`` is the value that a proof need not go beyond; ``fine`` asks for bounds close
-    to the worst points also where less would decide.
+    ``enough`` is the value that a proof need not go beyond.
     """
     with np.errstate(all="ignore"):
-        return _proven(box, measure, enough, _FINE_ROUNDS if fine else 0)
+        found = search(box, measure)
+        if care is Care.SEARCHED:
+            return Proven(found.value, found.point, np.full_like(found.value, -np.inf))
+        return _proven(box, measure, found, enough, care)
 
 
 def _gradients(box: Box) -> Values[Gradient]:
@@ -98,8 +115,7 @@ def _partials(measured: Gradient, box: Box) -> Partials:
     return low, high
 
 
-def _proven(box: Box, measure: Measure, enough: float, fine_rounds: int) -> Proven:
-    found = search(box, measure)
+def _proven(box: Box, measure: Measure, found: Worst, enough: float, care: Care) -> Proven:
     bound = np.full(len(box.specs), np.inf)
     ranges = box.high - box.low
     pieces, owner = box, np.arange(len(box.specs))
@@ -107,7 +123,8 @@ def _proven(box: Box, measure: Measure, enough: float, fine_rounds: int) -> Prov
         ((least, partials),) = _lower_bounds(pieces, [measure], [np.inf])
         points = (pieces.low == pieces.high).all(axis=1)
         found = _with_middles(found, pieces, owner, measure, least < found.value[owner])
-        target = _target(found.value, enough if turn >= fine_rounds else np.inf)
+        shown = care is Care.SHOWN and turn < _SHOWN_ROUNDS
+        target = _target(found.value, np.inf if shown else enough, care)
         spent = (turn == _MOST_ROUNDS - 1) | _crowded(owner, len(bound))
         settled = points | (least >= target[owner]) | spent
         np.minimum.at(bound, owner[settled], least[settled])
@@ -120,17 +137,16 @@ def _proven(box: Box, measure: Measure, enough: float, fine_rounds: int) -> Prov
     return Proven(found.value, found.point, np.minimum(bound, found.value))
 
 
-def _target(value: Array, enough: float) -> Array:
+def _target(value: Array, enough: float, care: Care) -> Array:
     """Return where a bound is good enough: near the worst found, and on its side of zero.
 
-    With ``enough`` finite, also where it decides.
+    Less will do where it decides, or where the value is broken and only that matters.
     """
     close = value - TOLERANCE * np.fmax(1.0, np.abs(value))
     near = np.where((value >= 0.0) & (value < TOLERANCE), 0.0, close)
-    if enough == np.inf:
-        return near
-    decides = np.where(value >= enough, enough, 0.0)
-    return np.where(value < 0.0, near, np.minimum(near, decides))
+    decides = np.minimum(near, np.where(value >= enough, enough, 0.0))
+    broken = np.full_like(near, -np.inf) if care is Care.DECIDED else near
+    return np.where(value < 0.0, broken, near if enough == np.inf else decides)
 
 
 def _lower_bounds(

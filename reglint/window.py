@@ -11,6 +11,8 @@ from reglint.spec import Spec
 
 #: How far around the stated value standard values are tried: a decade to each side.
 _DECADE = 10.0
+#: Values at which something else is tried as well.
+_FEW = 8
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,6 +44,19 @@ class Window:
                     return some
         return ()
 
+    def gap(self) -> tuple[float, ...]:
+        """Return a few values from where one of two clashing rules ends to where the other begins.
+
+        Of a rule that no value satisfies, a few of all.
+        """
+        values = sorted(self.failing)
+        needs = [self.needs(rule) for rule in self.clash()]
+        if len(needs) > 1:
+            ends = sorted((min(each), max(each)) for each in needs)
+            values = [each for each in values if ends[0][1] <= each <= ends[1][0]]
+        step = -(-len(values) // _FEW)
+        return tuple(values[::step])
+
 
 def trials(spec: Spec, field: str) -> dict[float, str]:
     """Return the standard values to try, with their texts: the stated tolerance is kept.
@@ -56,14 +71,20 @@ def trials(spec: Spec, field: str) -> dict[float, str]:
     return {value: f"{value!r} {unit} ± {100.0 * tolerance!r} %" for value in found}
 
 
-def window(spec: Spec, field: str, tried: Sequence[float], verdicts: Sequence[Verdict]) -> Window:
-    """Return what the verdicts on a spec's variants, one for each value tried, come to."""
+def window(
+    spec: Spec, field: str, tried: Sequence[float], verdicts: Sequence[Verdict | None]
+) -> Window:
+    """Return what the verdicts on a spec's variants, one for each value tried, come to.
+
+    A value without a verdict made the spec unsound: it is none of the window's.
+    """
+    sound = {v: each for v, each in zip(tried, verdicts, strict=True) if each}
     return Window(
         field=field,
         unit=spec.kind.fields[field].unit,
         series=series_for(spec.numbers[f"{field}.tolerance"]),
-        failing={v: _rules(each, Outcome.FAIL) for v, each in zip(tried, verdicts, strict=True)},
-        warning={v: _rules(each, Outcome.WARN) for v, each in zip(tried, verdicts, strict=True)},
+        failing={value: _rules(each, Outcome.FAIL) for value, each in sound.items()},
+        warning={value: _rules(each, Outcome.WARN) for value, each in sound.items()},
     )
 
 

@@ -5,7 +5,7 @@ an end of the operating ranges (supply, loads, ambient), or at the operating poi
 rule's worst case. A rule that is proven to hold is broken by no build, so none is drawn.
 """
 
-from collections.abc import Callable, Collection, Iterable, Mapping
+from collections.abc import Collection, Iterable, Mapping
 from dataclasses import dataclass, replace
 from typing import TypeAlias
 from zlib import crc32
@@ -48,10 +48,7 @@ def _normal(generator: Generator, count: int) -> Array:
 
 
 #: Draws between -1 and 1, the ends of a stated range.
-DISTRIBUTIONS: Mapping[str, Callable[[Generator, int], Array]] = {
-    "uniform": _uniform,
-    "normal": _normal,
-}
+DISTRIBUTIONS = {"uniform": _uniform, "normal": _normal}
 
 
 def yields(

@@ -24,7 +24,17 @@ LAYERS = [
     ["draft", "figure", "absent", "reader"],
     ["box", "worstcase", "proof", "margin"],
     ["finding", "shares", "extent", "ruling", "yield_", "waiver", "judge"],
-    ["window", "project", "sheet", "explain", "catalogue", "output", "reports"],
+    [
+        "window",
+        "lever",
+        "relaxation",
+        "project",
+        "sheet",
+        "explain",
+        "catalogue",
+        "output",
+        "reports",
+    ],
     ["cli"],
     ["__main__"],
 ]
