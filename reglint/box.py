@@ -96,6 +96,13 @@ def box_of(
     )
 
 
+def boxes_of(circuit: Circuit, specs: Sequence[Spec]) -> dict[str, Box]:
+    """Return the boxes of specs of one circuit under every operating condition, by its name."""
+    numbers = numbers_of(circuit, specs)
+    conditions = circuit.kind.conditions
+    return {name: box_of(circuit, each, specs, numbers) for name, each in conditions.items()}
+
+
 def numbers_of(circuit: Circuit, specs: Sequence[Spec]) -> dict[str, Array]:
     """Return what a batch does not sweep, each of shape (s, 1); NaN where a spec states none."""
     swept = {name for spec in specs for name in spec.swept}

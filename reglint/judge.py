@@ -6,7 +6,7 @@ from dataclasses import dataclass, replace
 from datetime import date
 
 from reglint import ruling, waiver
-from reglint.box import Box, box_of, ends_of, numbers_of
+from reglint.box import Box, boxes_of, ends_of
 from reglint.circuit import Circuit
 from reglint.extent import extents
 from reglint.finding import Extent, Finding, Outcome, Verdict
@@ -66,9 +66,7 @@ def _batches(cases: Sequence[Case]) -> Iterable[list[int]]:
 def _judge_batch(batch: Sequence[Case], wanted: Wanted) -> Iterator[Verdict]:
     circuit, rules = batch[0].circuit, batch[0].rules
     specs = [case.spec for case in batch]
-    numbers = numbers_of(circuit, specs)
-    conditions = circuit.kind.conditions
-    boxes = {name: box_of(circuit, each, specs, numbers) for name, each in conditions.items()}
+    boxes = boxes_of(circuit, specs)
     ranges = extents(boxes) if wanted.extents else [()] * len(specs)
     findings = _findings(boxes, rules, wanted)
     for row, (spec, found, range_) in enumerate(zip(specs, findings, ranges, strict=True)):
