@@ -1,0 +1,95 @@
+"""What every report says of a run in words: counts, corners, shares, waivers, the caution."""
+
+from collections import Counter
+from collections.abc import Iterator, Sequence
+
+from reglint.finding import Finding, Outcome, Run, Verdict, Yield
+from reglint.quantity import render
+
+#: Said in every report that a person reads.
+CAUTION = (
+    "This is a screening aid: a pass is no proof of safety or compliance."
+    " Local codes and licensed practice decide."
+)
+
+
+def outcome_word(finding: Finding) -> str:
+    """Return the word for a finding's outcome, or that it is waived."""
+    return "waived" if finding.waived else finding.outcome.value
+
+
+def shown(verdict: Verdict, *, everything: bool) -> list[Finding]:
+    """Return the findings a report lists, the worst first; passes only if everything is wanted."""
+    listed = (f for f in verdict.findings if everything or f.outcome is not Outcome.PASS)
+    return sorted(listed, key=lambda each: -each.outcome.rank)
+
+
+def tally(verdict: Verdict) -> str:
+    """Return how many rules of a spec came to what."""
+    counts = {outcome.value: 0 for outcome in reversed(Outcome)} | {"waived": 0}
+    for finding in verdict.findings:
+        counts[outcome_word(finding)] += 1
+    counts["pass"] = verdict.passed
+    listed = [f"{count} {word}" for word, count in counts.items() if count]
+    skipped = [f"{len(verdict.skipped)} without a limit"] if verdict.skipped else []
+    return ", ".join(listed + skipped)
+
+
+def corner(verdict: Verdict, finding: Finding) -> str:
+    """Return the worst point of a finding, every name with its value."""
+    kind = verdict.spec.kind
+    units = {path: field.unit for path, field in kind.fields.items()}
+    units |= {path: total.unit for path, total in kind.totals.items()}
+    point = finding.corner or {}
+    return ", ".join(f"{name} {render(value, units[name])}" for name, value in point.items())
+
+
+def shares(finding: Finding) -> str:
+    """Return who ate a finding's margin, each with its line."""
+    return ", ".join(
+        f"{each.path} {100.0 * each.share:.0f} % (line {each.span.line})" for each in finding.shares
+    )
+
+
+def waiver(verdict: Verdict, finding: Finding) -> str:
+    """Return why a waived finding is accepted, by whom and until when."""
+    found = next(each for each in verdict.spec.waivers if each.rule == finding.rule)
+    return f"{found.reason}; by {found.approved_by} until {found.until}"
+
+
+def window(verdict: Verdict, field: str, values: Sequence[float]) -> str:
+    """Return the values of a field at which a failing spec would hold."""
+    if not values:
+        return f"no standard value of {field}: reglint window {verdict.spec.file} tells why"
+    unit = verdict.spec.kind.fields[field].unit
+    return f"{field} at {', '.join(render(value, unit) for value in values)}"
+
+
+def builds(drawn: Yield) -> str:
+    """Return how many builds break a rule, and what that says of all builds."""
+    low, high = (100.0 * end for end in drawn.interval())
+    count = f"{drawn.broken} of {drawn.builds} break {drawn.rule or 'any of these rules'}"
+    return f"{count} ({low:.3g} % to {high:.3g} % of all builds, at 95 % confidence)"
+
+
+def drawing(drawn: str) -> Iterator[str]:
+    """Yield how builds were drawn, if they were."""
+    if drawn:
+        yield f"Builds were drawn {drawn}; they never change an outcome."
+
+
+def summary(run: Run) -> Iterator[str]:
+    """Yield the sentences that end a report, without the caution."""
+    ends = Counter(verdict.outcome for verdict in run.verdicts)
+    specs = ", ".join(f"{ends[each]} {each.value}" for each in reversed(Outcome))
+    rules = ", ".join(f"{run.count(each)} {each.value}" for each in reversed(Outcome))
+    waived = f", {run.waived} waived" if run.waived else ""
+    yield f"{_plural(len(run.verdicts), 'spec')}: {specs}; rules: {rules}{waived}."
+    if any(each.outcome is Outcome.FAIL and not each.windows for each in run.verdicts):
+        yield "Standard values at which a failing spec would hold: reglint window FILE."
+    if run.problems:
+        yield f"{_plural(run.unreadable, 'file')} with something that could not be used."
+
+
+def _plural(count: int, noun: str) -> str:
+    return f"{count} {noun}" if count == 1 else f"{count} {noun}s"
