@@ -4,9 +4,10 @@ from collections.abc import Iterator, Mapping
 
 from reglint import quantity
 from reglint.circuit import Circuit, without_policy
+from reglint.declared import Curves
 from reglint.dimension import Dimension
 from reglint.errors import FormulaError
-from reglint.formula import Formula, Number, evaluate, names_in
+from reglint.formula import Formula, Name, Number, evaluate, names_in
 from reglint.functions import DIMENSIONS
 from reglint.kind import Kind, Quantity
 from reglint.nearest import hint
@@ -36,6 +37,10 @@ def check_kind(kind: Kind) -> Iterator[Complaint]:
     for field in kind.fields.values():
         for formula in field.otherwise:
             complaints += _formula(formula, kind.stated_names, names[field.path])
+    for curves in kind.pictures.curves.values():
+        complaints += _curves(curves, kind, names)
+    for area in kind.pictures.areas.values():
+        complaints += [*_axis(area.across, kind, names), *_axis(area.up, kind, names)]
     yield from complaints or _loops(circuit, names)
 
 
@@ -92,6 +97,37 @@ def _formula(
         return
     if wanted is not None and found != wanted:
         yield formula.complaint(FormulaError(f"this is in {found}, but {wanted} is wanted"))
+
+
+def _curves(one: Curves, kind: Kind, names: Names) -> Iterator[Complaint]:
+    """Yield what keeps curves from being drawn: unknown names, axes of several dimensions."""
+    if one.condition not in kind.conditions:
+        known = hint(one.condition, kind.conditions)
+        yield one.band.complaint(
+            FormulaError(f"{kind.name} has no condition {one.condition}{known}")
+        )
+    if not (isinstance(one.free.root, Name) and one.free.root.name in kind.quantities):
+        yield one.free.complaint(FormulaError("one quantity is wanted here, by its name"))
+        return
+    up = names[one.free.root.name]
+    complaints = [each for end in (one.start, one.end) for each in _formula(end, names, up)]
+    complaints += _formula(one.band, names)
+    yield from complaints
+    if not complaints:
+        across = evaluate(one.band.root, names.__getitem__, DIMENSIONS)
+        yield from _formula(one.lines, names, across)
+        for mark in one.marks:
+            in_up = not list(_formula(mark, names, up))
+            yield from () if in_up else _formula(mark, names, across)
+
+
+def _axis(one: Formula, kind: Kind, names: Names) -> Iterator[Complaint]:
+    """Yield what keeps a name from spanning an area: it must be a range a spec states."""
+    yield from (complaints := list(_formula(one, names)))
+    swept = {path for path, field in kind.fields.items() if field.role == "swept"}
+    spans = isinstance(one.root, Name) and one.root.name in swept | kind.totals.keys()
+    if not complaints and not spans:
+        yield one.complaint(FormulaError("one swept field or total is wanted here, by its name"))
 
 
 def _loops(circuit: Circuit, names: Names) -> Iterator[Complaint]:

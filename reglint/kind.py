@@ -7,6 +7,7 @@ from functools import cached_property
 from typing import TypeVar
 
 from reglint import quantity
+from reglint.declared import Declared, read_declared
 from reglint.dimension import ONE, Dimension
 from reglint.formula import Formula
 from reglint.statement import Statements
@@ -145,6 +146,7 @@ class Kind:
     #: A complete spec that passes every rule.
     sample: MappingNode
     file: str
+    pictures: Declared = dataclass_field(default_factory=Declared)
 
     def field(self, path: str) -> Field | None:
         """Return the field at a dotted path, an end of one, or one of a named item's fields."""
@@ -202,6 +204,7 @@ def read_kind(document: Document, name: str, file: str, statements: Statements) 
         conditions=each("conditions", lambda path, node: _read_condition(path, node, statements)),
         sample=section(root, "sample"),
         file=file,
+        pictures=read_declared(section(root, "pictures"), statements),
     )
 
 

@@ -18,7 +18,7 @@ LAYERS = [
     ["dimension", "preferred", "gradient", "roots", "plaintext", "tree"],
     ["document", "quantity"],
     ["functions", "formula", "statement", "schema"],
-    ["kind", "rule", "policy", "part", "files"],
+    ["declared", "kind", "rule", "policy", "part", "files"],
     ["circuit", "values", "check", "spec_schema"],
     ["rulebook", "settings", "spec", "starter"],
     ["draft", "figure", "absent", "reader"],
