@@ -122,7 +122,8 @@ def check(
         click.echo(f"reglint: {project.show(path)} {said}", err=True)
     day = today or date.today()  # noqa: DTZ011 -- a waiver ends on the reader's own day
     draw = Draw(builds, seed, distribution) if builds else None
-    wanted = Wanted(day, everything, reports.wants_extents(report), draw)
+    extents, account = reports.wants_extents(report), reports.accountant(report)
+    wanted = Wanted(day, everything, extents, draw, account=account)
     run = project.check(specs, wanted)
     _check_supposed(project, run)
     drawn = f"from seed {seed}, {distribution} where a spec states nothing else" if draw else ""

@@ -6,6 +6,7 @@ from enum import Enum
 from math import sqrt
 from statistics import NormalDist
 
+from reglint.account import Account
 from reglint.kind import Kind
 from reglint.rule import Rule
 from reglint.source import Problem, Span
@@ -117,6 +118,8 @@ class Verdict:
     windows: Mapping[str, tuple[float, ...]] = field(default_factory=dict)
     #: If wanted, the builds that break a rule, by rule; the last is of all rules together.
     yields: tuple[Yield, ...] = ()
+    #: What a reader needs beside the findings, where a report wants it and it is not too much.
+    account: Account | None = None
 
     @property
     def kind(self) -> Kind:

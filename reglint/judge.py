@@ -1,11 +1,13 @@
 """Judgement: specs against the rules of their kind, everything alike at once."""
 
 from collections import defaultdict
-from collections.abc import Iterable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from datetime import date
+from typing import TypeAlias
 
 from reglint import ruling, waiver
+from reglint.account import Account
 from reglint.box import Box, boxes_of, ends_of
 from reglint.circuit import Circuit
 from reglint.extent import extents
@@ -19,6 +21,11 @@ from reglint.shares import shares
 from reglint.spec import Spec
 from reglint.worstcase import Array, at
 from reglint.yield_ import Draw, yields
+
+#: For each adjustable field, the case once for each standard value in its place.
+Trials: TypeAlias = Mapping[str, Mapping[float, "Case"]]
+#: Makes the account of a case from its whole verdict; the number tells it from others.
+Accountant: TypeAlias = Callable[["Case", Verdict, Trials, int], Account]
 
 
 @dataclass(frozen=True, slots=True)
@@ -34,6 +41,8 @@ class Wanted:
     draw: Draw | None = None
     #: How far worst cases are followed, where no bound is shown.
     care: Care = Care.TOLD
+    #: What makes an account of a spec, where one is wanted.
+    account: Accountant | None = None
 
 
 @dataclass(frozen=True, slots=True)

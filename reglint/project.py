@@ -39,6 +39,8 @@ _AT_ONCE = 500
 #: Failing specs that are told what would hold, in a run of so many at most: each costs as
 #: much as fifty others.
 _MOST_MENDED, _OF = 5, 100
+#: Specs of a run that an account is made of: pictures cost half a second and 60 kB each.
+_MOST_ACCOUNTS = 40
 
 
 @dataclass(frozen=True, slots=True)
@@ -80,6 +82,8 @@ class Project:
     untracked: list[Path] = dataclass_field(default_factory=list)
     #: How many failing specs were told what would hold.
     mended: int = 0
+    #: How many specs an account was made of.
+    accounted: int = 0
     #: The suppositions that met their spec.
     used: set[Supposition] = dataclass_field(default_factory=set)
 
@@ -131,13 +135,40 @@ class Project:
 
     def _judged(self, cases: Sequence[Case], wanted: Wanted) -> Iterator[Verdict]:
         """Judge some specs; in a small run the first that fail are told what would hold."""
-        for case, verdict in zip(cases, judge(cases, wanted), strict=True):
+        verdicts = judge(cases, wanted)
+        self._account(cases, verdicts, wanted)
+        for case, verdict in zip(cases, verdicts, strict=True):
             told = self.mended < _MOST_MENDED and len(cases) <= _OF
             if verdict.outcome is Outcome.FAIL and told:
                 self.mended += 1
                 yield _bare(replace(verdict, windows=self._windows(case, verdict, wanted)))
             else:
                 yield _bare(verdict)
+
+    def _account(self, cases: Sequence[Case], verdicts: list[Verdict], wanted: Wanted) -> None:
+        """Give verdicts their accounts, the worst first while there is room for them."""
+        if wanted.account is None:
+            return
+        rows = sorted(range(len(cases)), key=lambda row: (-verdicts[row].outcome.rank, row))
+        rows = sorted(rows[: _MOST_ACCOUNTS - self.accounted])
+        fully = replace(wanted, everything=True, extents=True)
+        whole = judge([cases[row] for row in rows], fully)
+        for row, verdict in zip(rows, whole, strict=True):
+            self.accounted += 1
+            trials_ = self._trials(cases[row])
+            made = wanted.account(cases[row], verdict, trials_, self.accounted)
+            verdicts[row] = replace(verdicts[row], account=made)
+
+    def _trials(self, case: Case) -> dict[str, dict[float, Case]]:
+        """Return a spec's variants over the standard values of each field its rules adjust."""
+        fields = sorted({field for rule in case.rules.values() for field in rule.adjust})
+        found = {}
+        for field in fields:
+            tried = trials(case.spec, field)
+            variants = self.variants(case, ({field: text} for text in tried.values()))
+            pairs = zip(tried, variants, strict=True)
+            found[field] = {value: each for value, each in pairs if each is not None}
+        return found
 
     def _windows(
         self, case: Case, verdict: Verdict, wanted: Wanted

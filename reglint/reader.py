@@ -73,6 +73,7 @@ def _spec(
         neglected=draft.neglected,
         waivers=waivers,
         distributions=distributions,
+        purpose=texts.get("purpose", ""),
     )
 
 

@@ -73,6 +73,8 @@ class Spec:
     waivers: tuple[Waiver, ...]
     #: How a stated figure's builds are spread between its ends, by path, where stated.
     distributions: Mapping[str, str]
+    #: What the regulator is for, in the spec's own words.
+    purpose: str
 
     @property
     def line(self) -> int:

@@ -34,6 +34,10 @@ LAYERS = [
         "judge",
         "calculation",
     ],
+    ["pictures", "pictures.svg", "pictures.scale", "pictures.plot", "pictures.hatch"],
+    ["pictures.contour", "pictures.sample", "pictures.field", "pictures.sweep"],
+    ["pictures.meeting", "pictures.margins", "pictures.curves", "pictures.area"],
+    ["pictures.adjustment", "accounting"],
     [
         "window",
         "lever",
@@ -50,7 +54,13 @@ LAYERS = [
     ["__main__"],
 ]
 RANK = {name: rank for rank, names in enumerate(LAYERS) for name in names}
-DOORWAYS = {"yaml": "document", "jsonschema": "schema", "quantiphy": "quantity", "click": "cli"}
+DOORWAYS = {
+    "yaml": "document",
+    "jsonschema": "schema",
+    "quantiphy": "quantity",
+    "click": "cli",
+    "jinja2": "reports",
+}
 
 
 def short(module: str) -> str:

@@ -10,6 +10,7 @@ from pkgutil import iter_modules
 from typing import TypeAlias
 
 from reglint.finding import Run
+from reglint.judge import Accountant
 
 
 @dataclass(frozen=True, slots=True)
@@ -41,3 +42,9 @@ def renderer(name: str) -> Renderer:
 def wants_extents(name: str) -> bool:
     """Tell whether a format shows the range of every quantity."""
     return bool(getattr(import_module(f"{__name__}.{name}"), "EXTENTS", False))
+
+
+def accountant(name: str) -> Accountant | None:
+    """Return what makes the accounts a format shows, where it shows any."""
+    found: Accountant | None = getattr(import_module(f"{__name__}.{name}"), "ACCOUNT", None)
+    return found
