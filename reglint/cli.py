@@ -80,6 +80,9 @@ def cli() -> None:
 @click.option("--derating", metavar="NAME", help="Judge every spec under this policy.")
 @click.option("--everything", is_flag=True, help="List passing rules too.")
 @click.option(
+    "--complete", is_flag=True, help="The complete log: waived findings with their suppressions."
+)
+@click.option(
     "--suppose",
     "suppositions",
     type=_Supposed(),
@@ -107,6 +110,7 @@ def check(
     gate: str | None,
     derating: str | None,
     everything: bool,
+    complete: bool,
     suppositions: tuple[Supposition, ...],
     builds: int | None,
     seed: int,
@@ -122,12 +126,13 @@ def check(
         click.echo(f"reglint: {project.show(path)} {said}", err=True)
     day = today or date.today()  # noqa: DTZ011 -- a waiver ends on the reader's own day
     draw = Draw(builds, seed, distribution) if builds else None
+    everything = everything or reports.wants_everything(report)
     extents, account = reports.wants_extents(report), reports.accountant(report)
     wanted = Wanted(day, everything, extents, draw, account=account)
     run = project.check(specs, wanted)
     _check_supposed(project, run)
     drawn = f"from seed {seed}, {distribution} where a spec states nothing else" if draw else ""
-    options = Options(everything, out is None and _coloured(colour), drawn)
+    options = Options(everything, out is None and _coloured(colour), drawn, complete)
     write(reports.renderer(report)(run, options), out)
     context.exit(_status(run, gate or project.gate()))
 

@@ -1,15 +1,13 @@
 """A project on disk: which files are specs, and what a check of them comes to."""
 
 import os
-import re
-import subprocess
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from dataclasses import field as dataclass_field
 from datetime import date
-from functools import cache
 from pathlib import Path
 
+from reglint.discovery import is_spec_name, listed, matches
 from reglint.document import read
 from reglint.draft import Context
 from reglint.errors import UsageError
@@ -300,7 +298,7 @@ class Project:
         for path in paths:
             if not path.exists():
                 raise UsageError(f"{self.show(path)}: there is no such file or folder")
-            below = [path] if _is_spec_name(path) else list(self._below(path))
+            below = [path] if is_spec_name(path) else list(self._below(path))
             if not below:
                 raise UsageError(f"{self.show(path)}: there is no spec here (*.reg.yaml)")
             found.update(below)
@@ -308,10 +306,10 @@ class Project:
 
     def _below(self, path: Path) -> Iterator[Path]:
         folder = path if path.is_dir() else root_above(path.parent) or path.parent
-        for each, tracked in _listed(folder):
+        for each, tracked in listed(folder):
             home = self.home(each)
             inner = each.relative_to(home.settings.root) if _inside(each, home) else each
-            if any(_matches(inner.as_posix(), glob) for glob in home.settings.specs):
+            if any(matches(inner.as_posix(), glob) for glob in home.settings.specs):
                 if not tracked:
                     self.untracked.append(each)
                 yield each
@@ -352,51 +350,5 @@ def _repeated(specs: Sequence[Spec]) -> Iterator[Complaint]:
         seen.setdefault(spec.name, spec)
 
 
-def _is_spec_name(path: Path) -> bool:
-    """Tell whether a path that was named is to be read as a spec, whatever the patterns say."""
-    knowledge = path.name.endswith((".part.yaml", ".part.yml")) or path.name == NAME
-    in_rules = (path.parent / "kind.yaml").exists() or path.parent.name == "derating"
-    return path.is_file() and not knowledge and not in_rules
-
-
 def _inside(path: Path, home: Home) -> bool:
     return path.is_relative_to(home.settings.root)
-
-
-#: What git would add: files it neither tracks nor ignores.
-_NOT_YET = ("--others", "--exclude-standard")
-
-
-def _listed(folder: Path) -> Iterator[tuple[Path, bool]]:
-    """Yield the files below a folder, each with whether git will bring it elsewhere.
-
-    Those are the files git tracks, and those it would add; all files, outside of git.
-    """
-    tracked, new = (_git(folder, *words) for words in (("--cached",), _NOT_YET))
-    if tracked is None or new is None:
-        found = dict.fromkeys(folder.rglob("*"), True)
-    else:
-        found = {folder / name: name in tracked for name in tracked | new}
-    yield from ((path, found[path]) for path in sorted(found) if path.is_file())
-
-
-def _git(folder: Path, *words: str) -> set[str] | None:
-    """Return the files git lists below a folder, or nothing where there is no repository."""
-    command = ["git", "ls-files", "-z", *words]
-    try:
-        listing = subprocess.run(command, cwd=folder, capture_output=True, check=True)  # noqa: S603
-    except (OSError, subprocess.CalledProcessError):
-        return None  # no git, or no repository: the folder itself is what there is
-    return {os.fsdecode(name) for name in listing.stdout.split(b"\0") if name}
-
-
-@cache
-def _pattern(glob: str) -> re.Pattern[str]:
-    """Translate a path pattern: ``**/`` is any folders, ``*`` and ``?`` stay inside a name."""
-    pieces = re.split(r"(\*\*/|\*|\?)", glob)
-    words = {"**/": "(?:.*/)?", "*": "[^/]*", "?": "[^/]"}
-    return re.compile("".join(words.get(each, re.escape(each)) for each in pieces))
-
-
-def _matches(path: str, glob: str) -> bool:
-    return _pattern(glob).fullmatch(path) is not None

@@ -5,6 +5,7 @@ from collections.abc import Iterator, Sequence
 
 from reglint.finding import Finding, Outcome, Run, Verdict, Yield
 from reglint.quantity import render
+from reglint.spec import Waiver
 
 #: Said in every report that a person reads.
 CAUTION = (
@@ -51,10 +52,39 @@ def shares(finding: Finding) -> str:
     )
 
 
-def waiver(verdict: Verdict, finding: Finding) -> str:
-    """Return why a waived finding is accepted, by whom and until when."""
-    found = next(each for each in verdict.spec.waivers if each.rule == finding.rule)
-    return f"{found.reason}; by {found.approved_by} until {found.until}"
+def waiver_of(verdict: Verdict, finding: Finding) -> Waiver | None:
+    """Return the waiver that accepts a finding, if one does."""
+    waivers = (each for each in verdict.spec.waivers if each.rule == finding.rule)
+    return next(waivers, None) if finding.waived else None
+
+
+def acceptance(accepted: Waiver) -> str:
+    """Return why a finding is accepted, by whom and until when."""
+    return f"{accepted.reason}; by {accepted.approved_by} until {accepted.until}"
+
+
+def details(verdict: Verdict, finding: Finding) -> Iterator[str]:
+    """Yield all there is to tell of a finding below its heading, a line each."""
+    yield finding.message
+    yield from (f"note       {note}" for note in finding.notes)
+    if rule := verdict.rules.get(finding.rule):
+        yield f"reason     {rule.reason}"
+    if finding.corner:
+        yield f"worst at   {corner(verdict, finding)}"
+    if finding.shares:
+        yield f"eaten by   {shares(finding)}"
+    if accepted := waiver_of(verdict, finding):
+        yield f"waived     {acceptance(accepted)}"
+    elif finding.remedy:
+        yield f"remedy     {finding.remedy}"
+
+
+def windows(verdict: Verdict, finding: Finding) -> Iterator[str]:
+    """Yield the values that would hold, for each field a failing finding's rule adjusts."""
+    rule = verdict.rules.get(finding.rule)
+    for field, values in verdict.windows.items():
+        if finding.outcome is Outcome.FAIL and rule and field in rule.adjust:
+            yield window(verdict, field, values)
 
 
 def window(verdict: Verdict, field: str, values: Sequence[float]) -> str:

@@ -59,7 +59,7 @@ def rulebook() -> Rulebook:
     return Rulebook()
 
 
-@pytest.fixture
+@pytest.fixture(scope="session")
 def sample(rulebook: Rulebook) -> Sample:
     """Return a maker of spec texts: the kind's sample with changes by dotted path."""
 

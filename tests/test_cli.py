@@ -57,6 +57,13 @@ def test_a_report_goes_to_a_file(folder: Path) -> None:
     assert sorted(each.name for each in folder.iterdir()) == ["a.reg.yaml", "report.txt"]
 
 
+def test_the_complete_log_is_an_option(folder: Path) -> None:
+    """Only with --complete does the SARIF log have suppressions, empty ones included."""
+    assert folder
+    assert '"suppressions": []' in run("check", "--report", "sarif", "--complete").stdout
+    assert "suppressions" not in run("check", "--report", "sarif").stdout
+
+
 def test_an_older_report_survives_where_the_new_one_cannot_be_written(folder: Path) -> None:
     """Writing into a folder that is not there is misuse, and leaves nothing behind."""
     result = run("check", "--out", "missing/report.txt")

@@ -20,7 +20,7 @@ LAYERS = [
     ["functions", "formula", "statement", "schema"],
     ["declared", "kind", "rule", "policy", "part", "files"],
     ["circuit", "values", "check", "spec_schema"],
-    ["rulebook", "settings", "spec", "starter"],
+    ["rulebook", "settings", "discovery", "spec", "starter"],
     ["draft", "figure", "absent", "reader"],
     ["box", "worstcase", "proof", "margin"],
     [

@@ -23,6 +23,8 @@ class Options:
     colour: bool = False
     #: How builds were drawn for the yield, in words; empty where none were.
     drawn: str = ""
+    #: Waived findings too, where a format leaves them out by default.
+    complete: bool = False
 
 
 Renderer: TypeAlias = Callable[[Run, Options], str]
@@ -48,3 +50,8 @@ def accountant(name: str) -> Accountant | None:
     """Return what makes the accounts a format shows, where it shows any."""
     found: Accountant | None = getattr(import_module(f"{__name__}.{name}"), "ACCOUNT", None)
     return found
+
+
+def wants_everything(name: str) -> bool:
+    """Tell whether a format lists passing rules unasked."""
+    return bool(getattr(import_module(f"{__name__}.{name}"), "EVERYTHING", False))

@@ -27,7 +27,9 @@ def render(run: Run, _options: Options) -> str:
         "specs": [_spec(verdict) for verdict in run.verdicts],
         "problems": [_problem(each) for each in run.problems],
     }
-    return json.dumps(report, indent=2, ensure_ascii=False, allow_nan=False) + "\n"
+    text = json.dumps(report, indent=2, ensure_ascii=False, allow_nan=False) + "\n"
+    # A file name that is not UTF-8 has halves of pairs, which JSON can only escape.
+    return text.encode("utf-8", "backslashreplace").decode()
 
 
 def _spec(verdict: Verdict) -> dict[str, Any]:

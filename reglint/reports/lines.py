@@ -2,9 +2,10 @@
 
 from collections.abc import Iterator
 
-from reglint.finding import Finding, Outcome, Run, Verdict
+from reglint.finding import Outcome, Run, Verdict
 from reglint.printable import printable
 from reglint.reports import Options
+from reglint.wording import outcome_word
 
 
 def render(run: Run, options: Options) -> str:
@@ -23,8 +24,4 @@ def _lines(verdict: Verdict, options: Options) -> Iterator[str]:
         if options.everything or finding.outcome is not Outcome.PASS:
             place = f"{verdict.spec.file}:{finding.span.line}:{finding.span.column}"
             said = f"{finding.rule}: {verdict.spec.name}: {finding.message}"
-            yield f"{place}: {_word(finding)}: {said}"
-
-
-def _word(finding: Finding) -> str:
-    return "waived" if finding.waived else finding.outcome.value
+            yield f"{place}: {outcome_word(finding)}: {said}"
