@@ -14,8 +14,9 @@ from typing import Any, TypeVar
 
 import click
 
-from reglint import __version__, reports
+from reglint import __version__, comparisons, reports
 from reglint.catalogue import described, listed
+from reglint.compare import compare as compared
 from reglint.errors import UsageError
 from reglint.explain import explain as explain_name
 from reglint.finding import Outcome, Run
@@ -143,6 +144,38 @@ def _check_supposed(project: Project, run: Run) -> None:
     for each in project.suppositions:
         if each not in project.used:
             raise UsageError(f"no spec is called {each.spec}{hint(each.spec, known)}")
+
+
+@cli.command()
+@click.argument("paths", nargs=-1, type=_PATHS)
+@click.option("--against", metavar="REV", required=True, help="Git revision to compare with.")
+@click.option("--report", type=click.Choice(comparisons.names()), default="text", show_default=True)
+@click.option("--out", type=_PATHS, help="Write the report to a file instead.")
+@click.option(
+    "--gate",
+    type=click.Choice(("worse", *_GATES)),
+    default="worse",
+    show_default=True,
+    help="What makes the status 1: anything worse than before, or an outcome from this on.",
+)
+@click.option("--derating", metavar="NAME", help="Judge every spec under this policy.")
+@click.option("--today", type=_Today(), help="The day waivers are judged on, as 2027-06-30.")
+@click.pass_context
+def compare(
+    context: click.Context,
+    paths: tuple[Path, ...],
+    against: str,
+    report: str,
+    out: Path | None,
+    gate: str,
+    derating: str | None,
+    today: date | None,
+) -> None:
+    """Compare the margins of the specs that PATHS lead to with those of a git revision."""
+    day = today or date.today()  # noqa: DTZ011 -- a waiver ends on the reader's own day
+    found = compared(Path.cwd(), paths or (Path.cwd(),), against, derating, day)
+    write(comparisons.renderer(report)(found), out)
+    context.exit(2 if found.problems else int(found.reaches(gate)))
 
 
 @cli.command()

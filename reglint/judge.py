@@ -39,8 +39,8 @@ class Wanted:
     extents: bool = False
     #: How builds are drawn for the yield, if at all.
     draw: Draw | None = None
-    #: How far worst cases are followed, where no bound is shown.
-    care: Care = Care.TOLD
+    #: How far worst cases are followed; nothing leaves it to what is wanted beside.
+    care: Care | None = None
     #: What makes an account of a spec, where one is wanted.
     account: Accountant | None = None
 
@@ -160,8 +160,8 @@ def _judged(
         yield row, ruling.bare_pass(rule)
     if unclear:
         part = box.take(unclear)
-        care = Care.SHOWN if wanted.everything or wanted.extents else wanted.care
-        proven = prove(part, Margin(rule), rule.warn_margin, care)
+        usual = Care.SHOWN if wanted.everything or wanted.extents else Care.TOLD
+        proven = prove(part, Margin(rule), rule.warn_margin, wanted.care or usual)
         points = _worst_points(part, rule, proven)
         yield from zip(
             unclear,

@@ -46,6 +46,11 @@ class Waiver:
     no_worse_than: float | None
     span: Span
 
+    @property
+    def terms(self) -> tuple[object, ...]:
+        """Return what was agreed, wherever it stands."""
+        return (self.rule, self.reason, self.approved_by, self.until, self.no_worse_than)
+
 
 @dataclass(frozen=True, slots=True)
 class Spec:

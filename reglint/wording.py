@@ -114,12 +114,13 @@ def summary(run: Run) -> Iterator[str]:
     specs = ", ".join(f"{ends[each]} {each.value}" for each in reversed(Outcome))
     rules = ", ".join(f"{run.count(each)} {each.value}" for each in reversed(Outcome))
     waived = f", {run.waived} waived" if run.waived else ""
-    yield f"{_plural(len(run.verdicts), 'spec')}: {specs}; rules: {rules}{waived}."
+    yield f"{plural(len(run.verdicts), 'spec')}: {specs}; rules: {rules}{waived}."
     if any(each.outcome is Outcome.FAIL and not each.windows for each in run.verdicts):
         yield "Standard values at which a failing spec would hold: reglint window FILE."
     if run.problems:
-        yield f"{_plural(run.unreadable, 'file')} with something that could not be used."
+        yield f"{plural(run.unreadable, 'file')} with something that could not be used."
 
 
-def _plural(count: int, noun: str) -> str:
+def plural(count: int, noun: str) -> str:
+    """Return a count with its noun."""
     return f"{count} {noun}" if count == 1 else f"{count} {noun}s"

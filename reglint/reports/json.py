@@ -2,6 +2,7 @@
 
 import json
 import math
+from collections.abc import Mapping
 from typing import Any
 
 from reglint import __version__
@@ -25,8 +26,13 @@ def render(run: Run, _options: Options) -> str:
             "unreadable": run.unreadable,
         },
         "specs": [_spec(verdict) for verdict in run.verdicts],
-        "problems": [_problem(each) for each in run.problems],
+        "problems": [problem(each) for each in run.problems],
     }
+    return written(report)
+
+
+def written(report: Mapping[str, Any]) -> str:
+    """Return data as JSON text with one trailing line end."""
     text = json.dumps(report, indent=2, ensure_ascii=False, allow_nan=False) + "\n"
     # A file name that is not UTF-8 has halves of pairs, which JSON can only escape.
     return text.encode("utf-8", "backslashreplace").decode()
@@ -56,8 +62,8 @@ def _yield(drawn: Yield) -> dict[str, Any]:
         "rule": drawn.rule or None,
         "broken": drawn.broken,
         "builds": drawn.builds,
-        "least": _number(low),
-        "most": _number(high),
+        "least": number(low),
+        "most": number(high),
     }
 
 
@@ -71,9 +77,9 @@ def _extent(extent: Extent) -> dict[str, Any]:
     return {
         "unit": extent.unit,
         "condition": extent.condition,
-        "min": _number(extent.min),
-        "nom": _number(extent.nom),
-        "max": _number(extent.max),
+        "min": number(extent.min),
+        "nom": number(extent.nom),
+        "max": number(extent.max),
     }
 
 
@@ -84,18 +90,18 @@ def _finding(finding: Finding, verdict: Verdict) -> dict[str, Any]:
         "outcome": finding.outcome.value,
         "waived": finding.waived,
         "condition": finding.condition,
-        "value": _number(finding.value),
-        "limit": _number(finding.limit),
+        "value": number(finding.value),
+        "limit": number(finding.limit),
         "unit": finding.unit,
-        "margin": _number(finding.margin),
+        "margin": number(finding.margin),
         "proven": finding.proven,
-        "bound": _number(finding.bound),
+        "bound": number(finding.bound),
         "line": finding.span.line,
         "column": finding.span.column,
         "message": finding.message,
         "notes": list(finding.notes),
         "remedy": finding.remedy,
-        "corner": {name: _number(value) for name, value in (finding.corner or {}).items()},
+        "corner": {name: number(value) for name, value in (finding.corner or {}).items()},
         "shares": [_share(each) for each in finding.shares],
         "window": {
             field: list(values)
@@ -108,21 +114,22 @@ def _finding(finding: Finding, verdict: Verdict) -> dict[str, Any]:
 def _share(share: Share) -> dict[str, Any]:
     return {
         "field": share.path,
-        "share": _number(share.share),
+        "share": number(share.share),
         "line": share.span.line,
         "column": share.span.column,
     }
 
 
-def _problem(problem: Problem) -> dict[str, Any]:
+def problem(found: Problem) -> dict[str, Any]:
+    """Return a problem with its place."""
     return {
-        "file": problem.file,
-        "line": problem.span.line,
-        "column": problem.span.column,
-        "message": problem.message,
+        "file": found.file,
+        "line": found.span.line,
+        "column": found.span.column,
+        "message": found.message,
     }
 
 
-def _number(value: float | None) -> float | None:
+def number(value: float | None) -> float | None:
     """Return a finite number to twelve digits; JSON has no infinity, so null stands for one."""
     return float(f"{value:.12g}") if value is not None and math.isfinite(value) else None
