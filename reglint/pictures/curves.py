@@ -3,7 +3,7 @@
 from collections.abc import Iterator
 
 from reglint.account import Picture
-from reglint.pictures.meeting import Corner, Meeting
+from reglint.pictures.meeting import Corner, Meeting, span
 from reglint.pictures.plot import TOP, Axis, Plot, across_scale, badge, up_scale
 from reglint.pictures.svg import drawing, label
 from reglint.quantity import render
@@ -35,21 +35,16 @@ def curves(name: str, found: Meeting) -> Picture:
 
 
 def _plot(name: str, found: Meeting) -> Plot:
-    """Return axes from zero, wide enough for both lines and all marks."""
-    most = max(*(max(each.line) for each in found.corners), *(at for _, at in found.uprights), 0.0)
-    least = min(0.0, *(at for _, at in found.uprights))
+    """Return axes that hold zero, all marks, the start of both lines and where they meet."""
+    low, high = span(found)
     declared, free = found.declared, found.free
     up = up_scale(float(free[0]), float(free[-1]), _HEIGHT)
-    across = across_scale(least, 1.04 * float(most))
+    across = across_scale(1.04 * low, 1.04 * high)
     return Plot(
         name,
-        Axis(_title(declared.band.text), across, lambda value: render(value, found.unit)),
-        Axis(_title(declared.free.text), up, lambda value: render(value, found.free_unit)),
+        Axis(declared.band.text.strip(), across, lambda value: render(value, found.unit)),
+        Axis(declared.free.text.strip(), up, lambda value: render(value, found.free_unit)),
     )
-
-
-def _title(formula: str) -> str:
-    return formula.strip()
 
 
 def _band(plot: Plot, found: Meeting) -> str:
@@ -62,8 +57,7 @@ def _both(plot: Plot, found: Meeting, letter: str, corner: Corner) -> str:
     """Return a corner's line and the curve it meets, in one kind of dash."""
     dash = {"stroke_dasharray": _DASHES[letter]}
     curve = plot.path(zip(corner.curve, found.free, strict=True), stroke_width="1.2", **dash)
-    ends = ((corner.line[0], found.free[0]), (corner.line[-1], found.free[-1]))
-    through = zip(corner.line, found.free, strict=True) if len(corner.line) else ends
+    through = zip(corner.line, found.free, strict=True)
     return curve + plot.path(through, stroke="#12507b", stroke_width="2.2", **dash)
 
 

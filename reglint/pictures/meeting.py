@@ -58,6 +58,13 @@ class Meeting:
     unit: str
 
 
+def span(found: Meeting) -> tuple[float, float]:
+    """Return the least and greatest value across that a drawing has to hold."""
+    starts = (float(value) for each in found.corners for value in (each.line[0], each.met))
+    values = (0.0, *starts, *(at for _, at in found.uprights))
+    return min(values), max(values)
+
+
 def meeting(declared: Curves, box: Box) -> Meeting | str:
     """Return the curves of the one spec of a box, or why there are none."""
     name = declared.free.text.strip()
@@ -71,7 +78,7 @@ def meeting(declared: Curves, box: Box) -> Meeting | str:
         if not np.isfinite([*low, *high, *(v for each in corners for v in each.line)]).all():
             return f"{declared.title}: a curve has no value somewhere."
         levels, uprights = _marks(declared, box)
-    return Meeting(
+    found = Meeting(
         declared=declared,
         free=free,
         band_low=low,
@@ -82,6 +89,8 @@ def meeting(declared: Curves, box: Box) -> Meeting | str:
         free_unit=unit_of(box.circuit, name),
         unit=str(evaluate(declared.band.root, names_of(box.circuit.kind).__getitem__, DIMENSIONS)),
     )
+    start, end = span(found)
+    return found if end > start else f"{declared.title}: the lines have no range here."
 
 
 def _one(values: Values[Array], formula: Formula) -> float:
