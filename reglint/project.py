@@ -285,7 +285,8 @@ class Project:
         found += wrong
         if wrong or spec is None or policy is None:
             return None
-        return Case(spec, book.circuit(kind, policy, spec.styles), book.rules(kind))
+        judged = replace(spec, derating=policy.name)
+        return Case(judged, book.circuit(kind, policy, spec.styles), book.rules(kind))
 
     def specs(self, paths: Sequence[Path]) -> list[Path]:
         """Return the spec files that paths lead to, sorted as they are shown.

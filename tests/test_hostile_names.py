@@ -14,6 +14,7 @@ from urllib.parse import unquote
 from xml.etree import ElementTree as ET
 
 import pytest
+from markdown_it import MarkdownIt
 
 from reglint import reports
 from reglint.finding import Finding, Outcome, Run
@@ -237,11 +238,28 @@ def _names(run: Run) -> Iterator[str]:
     yield from (verdict.spec.name for verdict in run.verdicts)
 
 
+def read_markdown(text: str, run: Run) -> None:
+    """Find a row for each finding and problem; no name became a link, a mention or an element."""
+    page = Page()
+    page.feed(MarkdownIt("gfm-like").render(text))
+    assert set(page.tags) <= {*"p strong em ul li details summary".split(), *TABLE}
+    assert not {"href", "src"} & page.attributes
+    assert page.tags.count("tr") == 2 + len(list(shown(run))) + len(run.problems)
+    words = "".join(page.words)
+    assert all(is_plain(line) for line in words.split("\n"))
+    assert not re.search(r"[@#]\w", "\0".join(page.words))
+    assert all(printable(name).strip() in words for name in _names(run))
+
+
+#: Elements of a table.
+TABLE = ("table", "thead", "tbody", "tr", "th", "td")
+
 READERS: Mapping[str, Callable[[str, Run], None]] = {
     "html": read_html,
     "json": read_json,
     "junit": read_junit,
     "lines": read_lines,
+    "markdown": read_markdown,
     "sarif": read_sarif,
     "text": read_text,
 }

@@ -48,8 +48,10 @@ LAYERS = [
         "catalogue",
         "output",
         "wording",
-        "reports",
     ],
+    ["revision", "comparison", "cause", "compare", "movement", "commonmark", "page"],
+    ["reports"],
+    ["comparisons"],
     ["cli"],
     ["__main__"],
 ]
@@ -59,14 +61,15 @@ DOORWAYS = {
     "jsonschema": "schema",
     "quantiphy": "quantity",
     "click": "cli",
-    "jinja2": "reports",
+    "jinja2": "page",
 }
 
 
 def short(module: str) -> str:
-    """Return a module's name within the package; a report counts as ``reports``."""
+    """Return a module's name within the package; a report counts as its folder."""
     name = module.removeprefix("reglint").lstrip(".") or "reglint"
-    return "reports" if name.startswith("reports") else name
+    folder = name.partition(".")[0]
+    return folder if folder in ("reports", "comparisons") else name
 
 
 def imported(path: Path) -> Iterator[str]:
