@@ -18,7 +18,7 @@ _MARKUP = re.compile(
 )
 #: What hosts make links, mentions and little pictures of. An empty comment within it keeps
 #: them from it, and is not shown.
-_LINKING = re.compile(r"[@#] | :(?=//|[a-z0-9_+-]+:) | \bwww(?=\.)", re.VERBOSE)
+_LINKING = re.compile(r"[@#] | // | :(?=[a-z0-9_+-]+:) | \bwww(?=\.)", re.VERBOSE)
 #: Comments on a pull request are cut beyond 65,536 characters.
 _MOST = 65_000
 

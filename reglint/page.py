@@ -11,8 +11,16 @@ from reglint.printable import printable
 
 #: The shape beside each word for an outcome; neither depends on colour.
 _SHAPES = {
-    **{"pass": "●", "warn": "▲", "fail": "■", "waived": "◇", "unreadable": "✕"},
-    **{"better": "↑", "worse": "↓", "changed": "↔", "added": "+", "removed": "−"},
+    "pass": "●",
+    "warn": "▲",
+    "fail": "■",
+    "waived": "◇",
+    "unreadable": "✕",
+    "better": "↑",
+    "worse": "↓",
+    "changed": "↔",
+    "added": "+",
+    "removed": "−",
 }
 
 

@@ -2,7 +2,7 @@
 
 After a wanted change the reports are made anew, from the folder ``examples``, by
 
-    for report in text lines json sarif; do
+    for report in text lines json sarif markdown; do
         reglint check . --today 2026-12-01 --report $report --out expected/check.$report
     done
     reglint check . --today 2026-12-01 --report junit --out expected/check.junit.xml
@@ -47,7 +47,7 @@ def printed(*words: str) -> tuple[int, str]:
     return result.exit_code, result.stdout
 
 
-@pytest.mark.parametrize("report", ["text", "lines", "json", "sarif", "junit"])
+@pytest.mark.parametrize("report", ["text", "lines", "json", "sarif", "junit", "markdown"])
 def test_the_examples_give_the_reports_beside_them(
     report: str, monkeypatch: pytest.MonkeyPatch
 ) -> None:

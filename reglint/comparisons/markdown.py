@@ -5,6 +5,7 @@ from collections.abc import Iterator
 from reglint import movement, wording
 from reglint.commonmark import document, escaped, folded, table
 from reglint.comparison import Compared, Comparison
+from reglint.plaintext import short
 
 #: A step that posts the report finds its own comment again by this.
 _MARKER = "reglint compare"
@@ -31,16 +32,18 @@ def _problems(comparison: Comparison) -> Iterator[str]:
 def _waivers(comparison: Comparison) -> Iterator[str]:
     """Yield what became of waivers: a change must not excuse itself unnoticed."""
     rows = [
-        (each.verdict.spec.name, said)
+        (short(each.verdict.spec.name), said)
         for each in comparison.specs
         for said in movement.waivers(each)
     ]
-    rows += [(spec.name, movement.ending(spec, waiver)) for spec, waiver in comparison.ending]
+    rows += [
+        (short(spec.name), movement.ending(spec, waiver)) for spec, waiver in comparison.ending
+    ]
     yield from table(("spec", "waiver"), rows) if rows else ()
 
 
 def _spec(compared: Compared) -> Iterator[str]:
-    name, place = compared.verdict.spec.name, movement.place(compared)
+    name, place = short(compared.verdict.spec.name), movement.place(compared)
     causes = [f"- {escaped(movement.cause(each))}" for each in compared.causes]
     rows = list(table(movement.COLUMNS, map(movement.cells, compared.movements)))
     lines = [*causes, *(rows if compared.movements else ())]

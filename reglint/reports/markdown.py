@@ -5,12 +5,12 @@ from collections.abc import Iterator
 from reglint import wording
 from reglint.commonmark import document, escaped, folded, table
 from reglint.finding import Finding, Outcome, Run, Verdict
+from reglint.plaintext import short
 from reglint.reports import Options
-from reglint.ruling import percent
 
 #: A step that posts the report finds its own comment again by this.
 _MARKER = "reglint check"
-_COLUMNS = ("outcome", "spec", "rule", "finding", "margin", "place")
+_COLUMNS = ("outcome", "spec", "rule", "finding", "place")
 
 
 def render(run: Run, options: Options) -> str:
@@ -46,9 +46,8 @@ def _findings(run: Run, options: Options) -> Iterator[str]:
 
 def _row(verdict: Verdict, finding: Finding) -> tuple[str, ...]:
     place = f"{verdict.spec.file}, line {finding.span.line}"
-    margin = percent(finding.margin) if finding.margin is not None else ""
-    word, name = wording.outcome_word(finding), verdict.spec.name
-    return (word, name, finding.rule, finding.message, margin, place)
+    word, name = wording.outcome_word(finding), short(verdict.spec.name)
+    return (word, name, finding.rule, finding.message, place)
 
 
 def _details(run: Run, options: Options) -> Iterator[str]:
@@ -56,7 +55,7 @@ def _details(run: Run, options: Options) -> Iterator[str]:
     for verdict in run.verdicts:
         shown = wording.shown(verdict, everything=options.everything)
         if shown:
-            title = f"{verdict.spec.name}: {wording.tally(verdict)}"
+            title = f"{short(verdict.spec.name)}: {wording.tally(verdict)}"
             yield from folded(title, _told(verdict, shown))
 
 
