@@ -16,8 +16,9 @@ from xml.etree import ElementTree as ET
 import pytest
 from markdown_it import MarkdownIt
 
-from reglint import reports
-from reglint.finding import Finding, Outcome, Run
+from reglint import comparisons, reports
+from reglint.comparison import Compared, Comparison, Movement
+from reglint.finding import Finding, Outcome, Run, Verdict
 from reglint.judge import Wanted
 from reglint.plaintext import short
 from reglint.printable import printable
@@ -310,3 +311,43 @@ def test_colour_lets_no_escape_of_a_name_through(run: Run) -> None:
     text = reports.renderer("text")(run, Options(colour=True))
     own = r"\x1b\[3[1-6]m(?:pass|warn|fail|waived|unreadable)\x1b\[0m"
     assert "\x1b" not in re.sub(rf"^( *){own}", r"\1", text, flags=re.MULTILINE)
+
+
+def of_all(run: Run) -> Comparison:
+    """Return a comparison in which every spec is new, every waiver ends, no problem is new."""
+    specs = tuple(Compared(None, each, tuple(movements(each))) for each in run.verdicts)
+    ending = tuple((each.spec, waiver) for each in run.verdicts for waiver in each.spec.waivers)
+    return Comparison("main", specs, 0, ending, run.problems, run.problems)
+
+
+def movements(verdict: Verdict) -> Iterator[Movement]:
+    """Yield a movement for each finding, from nothing."""
+    yield from (Movement(each.rule, None, each) for each in verdict.findings)
+
+
+@pytest.mark.parametrize("name", ["text", "html", "markdown"])
+def test_a_comparison_stays_sound_whatever_names_a_file_holds(name: str, run: Run) -> None:
+    """No name becomes an element, a link, a mention or something a terminal obeys."""
+    text = comparisons.renderer(name)(of_all(run))
+    page = Page()
+    page.feed(MarkdownIt("gfm-like").render(text) if name == "markdown" else text)
+    if name == "text":
+        assert all(map(is_plain, text.split("\n")))
+    else:
+        assert not {"script", "img", "b", "i", "iframe", "object", "form"} & set(page.tags)
+        assert not any(each.startswith("on") or each == "src" for each in page.attributes)
+        assert all(is_plain(line) for each in page.words for line in each.split("\n"))
+    if name == "markdown":
+        assert not re.search(r"[@#]\w", "\0".join(page.words))
+        assert len(text) < 65_536
+
+
+def test_a_comparison_as_data_gives_names_back(run: Run) -> None:
+    """JSON is not for show: names are as they were."""
+    report = json.loads(comparisons.renderer("json")(of_all(run)))
+    assert [each["name"] for each in report["specs"]] == [v.spec.name for v in run.verdicts]
+
+
+def test_every_format_of_a_comparison_is_tried() -> None:
+    """A new one needs its reader above."""
+    assert comparisons.names() == ["html", "json", "markdown", "text"]
