@@ -20,6 +20,7 @@ from reglint.compare import compare as compared
 from reglint.errors import UsageError
 from reglint.explain import explain as explain_name
 from reglint.finding import Outcome, Run
+from reglint.jobs import check as shared
 from reglint.judge import Case, Wanted
 from reglint.kind import Kind
 from reglint.nearest import hint
@@ -38,6 +39,7 @@ F = TypeVar("F", bound=Callable[..., Any])
 
 _PATHS = click.Path(path_type=Path)
 _GATES = ("fail", "warn", "never")
+_JOBS = "Processes for a run of more than a hundred specs."
 _YIELD = "Draw N builds of each spec, and tell how many break a rule."
 
 
@@ -100,6 +102,7 @@ def cli() -> None:
     show_default=True,
     help="For --yield, of figures whose spec states none.",
 )
+@click.option("--jobs", type=click.IntRange(1), default=1, show_default=True, help=_JOBS)
 @click.option("--today", type=_Today(), help="The day waivers are judged on, as 2027-06-30.")
 @click.option("--colour/--no-colour", default=None, help="Colour, whatever the terminal says.")
 @click.pass_context
@@ -116,6 +119,7 @@ def check(
     builds: int | None,
     seed: int,
     distribution: str,
+    jobs: int,
     today: date | None,
     colour: bool | None,
 ) -> None:
@@ -130,7 +134,7 @@ def check(
     everything = everything or reports.wants_everything(report)
     extents, account = reports.wants_extents(report), reports.accountant(report)
     wanted = Wanted(day, everything, extents, draw, account=account)
-    run = project.check(specs, wanted)
+    run = shared(project, specs, wanted, jobs)
     _check_supposed(project, run)
     drawn = f"from seed {seed}, {distribution} where a spec states nothing else" if draw else ""
     options = Options(everything, out is None and _coloured(colour), drawn, complete)

@@ -34,9 +34,9 @@ from reglint.window import window as window_of
 #: Specs judged as one array: enough for its speed, few enough that their trees take little
 #: memory.
 _AT_ONCE = 500
-#: Failing specs that are told what would hold, in a run of so many at most: each costs as
-#: much as fifty others.
-_MOST_MENDED, _OF = 5, 100
+#: Specs of a run in which failing ones are told what would hold, and how many of them: each
+#: costs as much as fifty others.
+SMALL, _MOST_MENDED = 100, 5
 #: Specs of a run that an account is made of: pictures cost half a second and 60 kB each.
 _MOST_ACCOUNTS = 40
 
@@ -78,7 +78,8 @@ class Project:
     homes: dict[Path, Home] = dataclass_field(default_factory=dict)
     #: Specs found that git does not track: a check elsewhere will not see them.
     untracked: list[Path] = dataclass_field(default_factory=list)
-    #: How many failing specs were told what would hold.
+    #: Whether failing specs of a small run are told what would hold, and how many were.
+    mends: bool = True
     mended: int = 0
     #: How many specs an account was made of.
     accounted: int = 0
@@ -126,18 +127,18 @@ class Project:
             cases += read_cases
             problems += found
             if len(cases) >= _AT_ONCE:
-                verdicts += self._judged(cases, wanted)
+                verdicts += self._judged(cases, wanted, mend=False)
                 cases = []
-        verdicts += self._judged(cases, wanted)
+        small = not verdicts and len(cases) <= SMALL
+        verdicts += self._judged(cases, wanted, mend=small and self.mends)
         return Run(tuple(verdicts), tuple(sorted({*problems, *self.problems()})))
 
-    def _judged(self, cases: Sequence[Case], wanted: Wanted) -> Iterator[Verdict]:
-        """Judge some specs; in a small run the first that fail are told what would hold."""
+    def _judged(self, cases: Sequence[Case], wanted: Wanted, *, mend: bool) -> Iterator[Verdict]:
+        """Judge some specs; if they are to be mended, the first that fail are told what holds."""
         verdicts = judge(cases, wanted)
         self._account(cases, verdicts, wanted)
         for case, verdict in zip(cases, verdicts, strict=True):
-            told = self.mended < _MOST_MENDED and len(cases) <= _OF
-            if verdict.outcome is Outcome.FAIL and told:
+            if verdict.outcome is Outcome.FAIL and mend and self.mended < _MOST_MENDED:
                 self.mended += 1
                 yield _bare(replace(verdict, windows=self._windows(case, verdict, wanted)))
             else:

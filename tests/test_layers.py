@@ -49,7 +49,7 @@ LAYERS = [
         "output",
         "wording",
     ],
-    ["revision", "comparison", "cause", "compare", "movement", "commonmark", "page"],
+    ["jobs", "revision", "comparison", "cause", "compare", "movement", "commonmark", "page"],
     ["reports"],
     ["comparisons"],
     ["cli"],

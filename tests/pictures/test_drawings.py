@@ -132,7 +132,7 @@ def swept(found: Any) -> Sweep:
     """Return the measured sweep of a judged spec over its resistance."""
     name = "series_resistor.resistance"
     tried = trials(found.case.spec, name)
-    variants = found.project.variants(found.case, name, tried.values())
+    variants = found.project.variants(found.case, [{name: text} for text in tried.values()])
     checked = {each.rule for each in found.verdict.findings if each.margin is not None}
     rules = [rule for rule in found.case.rules.values() if rule.name in checked]
     result = sweep(found.case, name, dict(zip(tried, variants, strict=True)), rules)
