@@ -16,7 +16,7 @@ RESISTANCE = "series_resistor.resistance"
 def swept(found: Any, *others: str) -> Sweep:
     """Return the sweep of a judged spec's checked rules, and others, over the resistance."""
     tried = trials(found.case.spec, RESISTANCE)
-    variants = found.project.variants(found.case, RESISTANCE, tried.values())
+    variants = found.project.variants(found.case, [{RESISTANCE: text} for text in tried.values()])
     checked = {each.rule for each in found.verdict.findings if each.margin is not None}
     rules = [each for each in found.case.rules.values() if each.name in {*checked, *others}]
     result = sweep(found.case, RESISTANCE, dict(zip(tried, variants, strict=True)), rules)
