@@ -2,6 +2,8 @@
 
 Status 0: nothing at or above the gate. 1: findings at or above it. 2: a file could not be
 read, or the command was misused. With several, the highest.
+
+What one command alone needs is imported there: half the time of a short check is imports.
 """
 
 import json
@@ -15,24 +17,15 @@ from typing import Any, TypeVar
 import click
 
 from reglint import __version__, comparisons, reports
-from reglint.catalogue import described, listed
-from reglint.compare import compare as compared
 from reglint.errors import UsageError
-from reglint.explain import explain as explain_name
 from reglint.finding import Outcome, Run
-from reglint.jobs import check as shared
 from reglint.judge import Case, Wanted
 from reglint.kind import Kind
 from reglint.nearest import hint
 from reglint.output import write
 from reglint.project import Home, Project, Supposition
-from reglint.relaxation import told as give_way
 from reglint.reports import Options
 from reglint.schema import KNOWLEDGE, knowledge_schema
-from reglint.sheet import sheet as calculation
-from reglint.spec_schema import editor_schema
-from reglint.starter import starter as commented
-from reglint.window import told, trials
 from reglint.yield_ import DISTRIBUTIONS, Draw
 
 F = TypeVar("F", bound=Callable[..., Any])
@@ -134,12 +127,20 @@ def check(
     everything = everything or reports.wants_everything(report)
     extents, account = reports.wants_extents(report), reports.accountant(report)
     wanted = Wanted(day, everything, extents, draw, account=account)
-    run = shared(project, specs, wanted, jobs)
+    run = _checked(project, specs, wanted, jobs)
     _check_supposed(project, run)
     drawn = f"from seed {seed}, {distribution} where a spec states nothing else" if draw else ""
     options = Options(everything, out is None and _coloured(colour), drawn, complete)
     write(reports.renderer(report)(run, options), out)
     context.exit(_status(run, gate or project.gate()))
+
+
+def _checked(project: Project, specs: list[Path], wanted: Wanted, jobs: int) -> Run:
+    if jobs == 1:
+        return project.check(specs, wanted)
+    from reglint.jobs import check as shared
+
+    return shared(project, specs, wanted, jobs)
 
 
 def _check_supposed(project: Project, run: Run) -> None:
@@ -176,6 +177,8 @@ def compare(
     today: date | None,
 ) -> None:
     """Compare the margins of the specs that PATHS lead to with those of a git revision."""
+    from reglint.compare import compare as compared
+
     day = today or date.today()  # noqa: DTZ011 -- a waiver ends on the reader's own day
     found = compared(Path.cwd(), paths or (Path.cwd(),), against, derating, day)
     write(comparisons.renderer(report)(found), out)
@@ -186,6 +189,8 @@ def compare(
 @click.argument("name")
 def explain(name: str) -> None:
     """Explain a rule, kind, quantity, field or derating policy in words, formula and source."""
+    from reglint.explain import explain as explain_name
+
     home = _home()
     write(explain_name(name, home.rulebook), None)
 
@@ -200,6 +205,8 @@ def sheet(
     context: click.Context, spec: Path, name: str | None, derating: str | None, out: Path | None
 ) -> None:
     """Print the calculation of SPEC: formulas, the numbers put in, least, nominal and most."""
+    from reglint.sheet import sheet as calculation
+
     project = Project(Path.cwd(), derating)
     cases, problems = project.read(spec)
     problems += project.problems()
@@ -222,6 +229,9 @@ def window(spec: Path, field: str | None, name: str | None, derating: str | None
 
     Without FIELD, of every field that the spec's rules name for adjustment.
     """
+    from reglint.relaxation import told as give_way
+    from reglint.window import told, trials
+
     project = Project(Path.cwd(), derating)
     cases, problems = project.read(spec)
     if problems:
@@ -243,6 +253,8 @@ def window(spec: Path, field: str | None, name: str | None, derating: str | None
 @click.option("--out", type=_PATHS, help="Write the spec to a file instead.")
 def starter(kind: str, out: Path | None) -> None:
     """Print a commented spec of KIND to fill in."""
+    from reglint.starter import starter as commented
+
     write(commented(_kind(_home(), kind)), out)
 
 
@@ -254,6 +266,8 @@ def schema(name: str | None, out: Path | None) -> None:
 
     NAME is a kind, or one of: rule, kind, policy, part, settings.
     """
+    from reglint.spec_schema import editor_schema
+
     home = _home()
     if name is None:
         kinds = [_kind(home, each) for each in home.rulebook.kind_names()]
@@ -269,6 +283,8 @@ def schema(name: str | None, out: Path | None) -> None:
 @click.argument("name", required=False)
 def parts(name: str | None) -> None:
     """List the known parts, or print what is known of the part NAME and from where."""
+    from reglint.catalogue import described, listed
+
     book = _home().rulebook
     if name is None:
         write(listed(book.parts().values()), None)

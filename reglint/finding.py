@@ -4,7 +4,6 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 from enum import Enum
 from math import sqrt
-from statistics import NormalDist
 
 from reglint.account import Account
 from reglint.kind import Kind
@@ -79,6 +78,10 @@ class Extent:
     max: float
 
 
+#: Standard score of a two-sided interval at 95 %.
+_SCORE = 1.959963984540054
+
+
 @dataclass(frozen=True, slots=True)
 class Yield:
     """How many of the drawn builds break a rule."""
@@ -88,13 +91,13 @@ class Yield:
     broken: int
     builds: int
 
-    def interval(self, confidence: float = 0.95) -> tuple[float, float]:
-        """Return what the fraction of broken builds lies between: Wilson's score interval.
+    def interval(self) -> tuple[float, float]:
+        """Return what the fraction of broken builds lies between: Wilson's 95 % score interval.
 
         Source: E. B. Wilson, Probable inference, the law of succession, and statistical
         inference, J. Am. Stat. Assoc. 22 (1927) 209-212.
         """
-        score = NormalDist().inv_cdf(0.5 + 0.5 * confidence)
+        score = _SCORE
         count, found = self.builds, self.broken / self.builds
         scale = 1.0 + score**2 / count
         middle = (found + score**2 / (2.0 * count)) / scale
