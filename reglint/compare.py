@@ -3,7 +3,6 @@
 import os
 from collections import defaultdict
 from collections.abc import Container, Iterable, Iterator, Sequence
-from contextlib import suppress
 from dataclasses import dataclass
 from datetime import date, timedelta
 from pathlib import Path
@@ -33,6 +32,8 @@ class _State:
 
     cases: Sequence[Case]
     problems: tuple[Problem, ...]
+    #: For each path asked for, whether it leads to a spec.
+    leads: tuple[bool, ...]
 
 
 def compare(
@@ -46,8 +47,10 @@ def compare(
     with revision(folder, against) as (found, place):
         there = [place / os.path.relpath(path, folder) for path in paths]
         then = _state(Project(place, derating), there)
-    if not (now.cases or now.problems or then.cases or then.problems):
-        raise UsageError(f"there is no spec here (*.reg.yaml), now or at {against}")
+    for path, one, other in zip(paths, now.leads, then.leads, strict=True):
+        if not (one or other):
+            shown = Path(os.path.relpath(path, folder)).as_posix()
+            raise UsageError(f"{shown}: there is no spec (*.reg.yaml), now or at {against}")
     pairs = _paired(then.cases, now.cases)
     moved = [(old, new) for old, new in pairs if not (old and new and alike(old, new))]
     return Comparison(
@@ -62,13 +65,19 @@ def compare(
 
 def _state(project: Project, paths: Sequence[Path]) -> _State:
     """Read the specs that paths lead to; a path may lead somewhere in the other state only."""
-    found: set[Path] = set()
-    for path in paths:
-        with suppress(UsageError):
-            found.update(project.specs([path]))
-    read = [project.read(path) for path in sorted(found, key=project.show)]
-    problems = [*(each for _, some in read for each in some), *project.problems()]
-    return _State([case for some, _ in read for case in some], tuple(sorted(set(problems))))
+    led = [_specs(project, path) for path in paths]
+    read = [project.read(path) for path in sorted(set().union(*led), key=project.show)]
+    problems = {*(each for _, some in read for each in some), *project.problems()}
+    cases = [case for some, _ in read for case in some]
+    return _State(cases, tuple(sorted(problems)), tuple(map(bool, led)))
+
+
+def _specs(project: Project, path: Path) -> list[Path]:
+    """Return the specs a path leads to, if it leads anywhere in this state."""
+    try:
+        return project.specs([path])
+    except UsageError:
+        return []
 
 
 def _paired(then: Sequence[Case], now: Sequence[Case]) -> list[Pair]:

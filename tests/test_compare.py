@@ -300,6 +300,20 @@ def test_a_folder_below_the_root_is_compared_with_itself(
     assert (spec["file"], compared("one")["same"]) == ("one/a.reg.yaml", 0)
 
 
+def test_a_path_that_leads_nowhere_is_refused(repository: Repository, sample: Sample) -> None:
+    """A slip in a name is no comparison that finds nothing worse."""
+    repository({"boards/a.reg.yaml": sample()})
+    found = run("--against", "HEAD", "boards", "bords")
+    assert str(found.exception) == "bords: there is no spec (*.reg.yaml), now or at HEAD"
+
+
+def test_a_path_of_the_past_is_compared(repository: Repository, sample: Sample) -> None:
+    """What is gone now is told as removed."""
+    folder = repository({"a.reg.yaml": sample(), "b.reg.yaml": sample()})
+    (folder / "b.reg.yaml").unlink()
+    assert [each["word"] for each in compared("b.reg.yaml")["specs"]] == ["removed"]
+
+
 @pytest.mark.parametrize("report", ["text", "markdown", "html"])
 def test_every_format_tells_rule_before_and_after(
     report: str, repository: Repository, sample: Sample
