@@ -106,6 +106,7 @@ def drawing(drawn: str) -> Iterator[str]:
     """Yield how builds were drawn, if they were."""
     if drawn:
         yield f"Builds were drawn {drawn}; they never change an outcome."
+        yield "Where a rule is not named under builds, it is proven to hold or was not checked."
 
 
 def summary(run: Run) -> Iterator[str]:
