@@ -4,7 +4,6 @@ import math
 
 import numpy as np
 
-from reglint import quantity
 from reglint.draft import Draft
 from reglint.formula import Formula, Number, evaluate, names_in
 from reglint.functions import REAL
@@ -40,7 +39,7 @@ def _derive(draft: Draft, one: Field, formula: Formula) -> bool:
         return False
     draft.numbers[one.path] = value
     source = "" if isinstance(formula.root, Number) else f"{formula.text} = "
-    draft.assume(one.path, f"not stated, taken as {source}{quantity.render(value, one.unit)}")
+    draft.assume(one.path, f"not stated, taken as {source}", value, one.unit)
     return True
 
 

@@ -42,9 +42,9 @@ class Draft:
         component = path.partition(".")[0]
         return f"{component}.part" in self.texts and component not in self.parts
 
-    def assume(self, path: str, says: str) -> None:
+    def assume(self, path: str, text: str, value: float | None = None, unit: str = "") -> None:
         """Note what was taken for a figure the spec does not state."""
-        self.assumptions.append(Assumption(path, says))
+        self.assumptions.append(Assumption(path, text, value, unit))
 
 
 @dataclass(frozen=True, slots=True)

@@ -96,18 +96,13 @@ def _range(draft: Draft, one: Field, node: Node) -> Range | None:
             stated = quantity.range_of(0.0, None, stated.max, unit)
             draft.assume(one.path, "a single figure is a maximum: swept from zero")
     elif isinstance(node, MappingNode):
-        ends = _ends(node, replace(one, unit=unit))
+        ends = _ends(node, replace(one, unit=unit) if relative else one)
         stated = quantity.range_of(ends.get("min"), ends.get("nom"), ends.get("max"), unit)
         if "nom" not in ends and not stated.exact:
-            _say_middle(draft, replace(one, unit=unit), stated)
+            draft.assume(one.path, "nominal taken as the middle, ", stated.nom, unit)
     else:
         return None
     return _of_whole(draft, one, stated) if relative else stated
-
-
-def _say_middle(draft: Draft, one: Field, stated: Range) -> None:
-    nominal = quantity.render(stated.nom, one.unit)
-    draft.assume(one.path, f"nominal taken as the middle, {nominal}")
 
 
 def _ends(node: MappingNode, one: Field) -> dict[str, float]:

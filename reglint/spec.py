@@ -5,6 +5,7 @@ from dataclasses import dataclass
 from datetime import date
 
 from reglint.kind import Kind
+from reglint.quantity import render
 from reglint.source import Span
 from reglint.tree import Mapping as MappingNode
 from reglint.tree import find, span_of
@@ -31,7 +32,15 @@ class Assumption:
     """A figure the spec does not state, and what was taken for it."""
 
     path: str
-    says: str
+    text: str
+    #: The figure taken, behind the text; it is put in words only where somebody reads them.
+    value: float | None = None
+    unit: str = ""
+
+    @property
+    def says(self) -> str:
+        """Return what was taken, in words."""
+        return self.text if self.value is None else f"{self.text}{render(self.value, self.unit)}"
 
 
 @dataclass(frozen=True, slots=True)
