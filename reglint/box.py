@@ -114,12 +114,11 @@ def ends_of(terms: Sequence[Term] | None, condition: Condition) -> tuple[float, 
     """Return the least, nominal and greatest value of a sum of terms under a condition."""
     if terms is None:
         return (np.nan, np.nan, np.nan)
-    ends = [term_ends(term, condition) for term in terms]
-    return (
-        sum(end[0] for end in ends),
-        sum(end[1] for end in ends),
-        sum(end[2] for end in ends),
-    )
+    low = nominal = high = 0.0
+    for term in terms:
+        ends = term_ends(term, condition)
+        low, nominal, high = low + ends[0], nominal + ends[1], high + ends[2]
+    return low, nominal, high
 
 
 def term_ends(term: Term, condition: Condition) -> tuple[float, float, float]:

@@ -78,6 +78,9 @@ class Interval:
     @_operator
     def __mul__(self, other: "Interval") -> "Interval":
         """Return an enclosure of the products."""
+        if (self.low >= 0.0).all() and (other.low >= 0.0).all():
+            low, high = _product(self.low, other.low), _product(self.high, other.high)
+            return Interval(_down(low), _up(high))
         ends = [
             _product(one, two) for one in (self.low, self.high) for two in (other.low, other.high)
         ]

@@ -121,11 +121,11 @@ def _findings(
 
 def _checkable(box: Box, rule: Rule, found: list[dict[str, Finding | None]]) -> list[int]:
     """Return the specs a rule can be evaluated for; the others get their finding at once."""
-    asked = _asked(box, rule)
-    uncovered = sorted(asked & box.circuit.not_covered.keys())
+    asked = sorted(_asked(box, rule))
+    uncovered = [name for name in asked if name in box.circuit.not_covered]
     rows = []
     for row, spec in enumerate(box.specs):
-        missing = sorted(name for name in asked if not spec.has(name))
+        missing = [name for name in asked if name not in spec.numbers and name not in spec.swept]
         stated = [name for name in missing if name not in uncovered]
         assumed = [name for name in rule.needs if name in spec.neglected]
         if not missing and not assumed:
@@ -156,8 +156,8 @@ def _judged(
         for row in rows
     ]
     unclear = [row for row, sure in zip(rows, passes, strict=True) if wanted.everything or not sure]
-    for row in set(rows).difference(unclear):
-        yield row, ruling.bare_pass(rule)
+    passed = ruling.bare_pass(rule)
+    yield from ((row, passed) for row in set(rows).difference(unclear))
     if unclear:
         part = box.take(unclear)
         usual = Care.SHOWN if wanted.everything or wanted.extents else Care.TOLD

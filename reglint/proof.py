@@ -30,6 +30,8 @@ _SHOWN_ROUNDS = 5
 #: Rounds, and pieces of one spec's box, before the proof is given up.
 _MOST_ROUNDS = 30
 _MOST_PIECES = 1024
+#: Halvings at once while a round has few pieces: its cost hardly depends on them.
+_HALVINGS, _FEW = 3, 256
 #: Boxes whose gradients are evaluated at once.
 _AT_ONCE = 1 << 12
 
@@ -133,7 +135,10 @@ def _proven(box: Box, measure: Measure, found: Worst, enough: float, care: Care)
             break
         pieces = narrowed(pieces.take(rows), (partials[0][rows], partials[1][rows]))
         steepness = np.maximum(-partials[0][rows], partials[1][rows])
-        pieces, owner = _halved(pieces, owner[rows], steepness, ranges)
+        owner = owner[rows]
+        for _ in range(_HALVINGS if len(rows) < _FEW else 1):
+            pieces, source = _halved(pieces, steepness, ranges[owner])
+            steepness, owner = steepness[source], owner[source]
     return Proven(found.value, found.point, np.minimum(bound, found.value))
 
 
@@ -230,22 +235,25 @@ def _crowded(owner: npt.NDArray[np.intp], count: int) -> npt.NDArray[np.bool_]:
 
 
 def _halved(
-    pieces: Box, owner: npt.NDArray[np.intp], steepness: Array, ranges: Array
+    pieces: Box, steepness: Array, ranges: Array
 ) -> tuple[Box, npt.NDArray[np.intp]]:
-    """Return every piece in two halves, along the name that matters most; points stay whole."""
+    """Return every piece in two halves, along the name that matters most; points stay whole.
+
+    With them, for each half, the row of the piece it is of.
+    """
     width = pieces.high - pieces.low
-    relative = np.divide(width, ranges[owner], out=np.zeros_like(width), where=width > 0.0)
+    relative = np.divide(width, ranges, out=np.zeros_like(width), where=width > 0.0)
     matters = np.where(width > 0.0, steepness * width, 0.0)
     # Where a slope is unbounded, or none matters, the range least divided yet is halved.
     clear = np.isfinite(matters).all(axis=1) & (matters.max(axis=1) > 0.0)
     column = np.where(clear[:, None], matters, relative).argmax(axis=1)
-    rows = np.arange(len(owner))
+    rows = np.arange(len(width))
     middle = 0.5 * (pieces.low + pieces.high)[rows, column]
     upper = np.flatnonzero((width > 0.0).any(axis=1))
     lower_high, upper_low = pieces.high.copy(), pieces.low[upper]
     lower_high[upper, column[upper]] = middle[upper]
     upper_low[np.arange(len(upper)), column[upper]] = middle[upper]
-    both = pieces.take(np.concatenate((rows, upper)))
+    source = np.concatenate((rows, upper))
     low = np.concatenate((pieces.low, upper_low))
     high = np.concatenate((lower_high, pieces.high[upper]))
-    return replace(both, low=low, high=high), np.concatenate((owner, owner[upper]))
+    return replace(pieces.take(source), low=low, high=high), source

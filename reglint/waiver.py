@@ -26,7 +26,7 @@ def apply(
     }
     for each in findings:
         works = each.rule in by_rule and each.rule not in trouble
-        yield replace(each, waived=works and each.outcome is not Outcome.PASS)
+        yield replace(each, waived=True) if works and each.outcome is not Outcome.PASS else each
     for rule, said in trouble.items():
         message = f"the waiver of {rule} {said}"
         yield Finding(
