@@ -122,11 +122,11 @@ def _proven(box: Box, measure: Measure, found: Worst, enough: float, care: Care)
     ranges = box.high - box.low
     pieces, owner = box, np.arange(len(box.specs))
     for turn in range(_MOST_ROUNDS):
-        ((least, partials),) = _lower_bounds(pieces, [measure], [np.inf])
-        points = (pieces.low == pieces.high).all(axis=1)
-        found = _with_middles(found, pieces, owner, measure, least < found.value[owner])
         shown = care is Care.SHOWN and turn < _SHOWN_ROUNDS
         target = _target(found.value, np.inf if shown else enough, care)
+        ((least, partials),) = _lower_bounds(pieces, [measure], [target[owner]])
+        points = (pieces.low == pieces.high).all(axis=1)
+        found = _with_middles(found, pieces, owner, measure, least < found.value[owner])
         spent = (turn == _MOST_ROUNDS - 1) | _crowded(owner, len(bound))
         settled = points | (least >= target[owner]) | spent
         np.minimum.at(bound, owner[settled], least[settled])
@@ -155,14 +155,16 @@ def _target(value: Array, enough: float, care: Care) -> Array:
 
 
 def _lower_bounds(
-    box: Box, measures: Sequence[Measure], enough: Sequence[float]
+    box: Box, measures: Sequence[Measure], enough: Sequence[Array | float]
 ) -> Iterator[tuple[Array, Partials]]:
     """Yield what each measure cannot fall below in each box, and its partials there.
 
-    A few thousand boxes at once: many pieces of many specs must not fill the memory.
+    Beyond ``enough``, of each measure in each box, no closer bound is looked for. A few
+    thousand boxes at once: many pieces of many specs must not fill the memory.
     """
+    wanted = [np.broadcast_to(each, len(box.specs)) for each in enough]
     parts = [
-        list(_bounds_at_once(box.take(rows), measures, enough))
+        list(_bounds_at_once(box.take(rows), measures, [each[rows] for each in wanted]))
         for rows in slices(np.arange(len(box.specs)), _AT_ONCE)
     ]
     for each in zip(*parts, strict=True):
@@ -172,7 +174,7 @@ def _lower_bounds(
 
 
 def _bounds_at_once(
-    box: Box, measures: Sequence[Measure], enough: Sequence[float]
+    box: Box, measures: Sequence[Measure], enough: Sequence[Array]
 ) -> Iterator[tuple[Array, Partials]]:
     """Yield the bounds and partials of few enough boxes.
 
@@ -234,9 +236,7 @@ def _crowded(owner: npt.NDArray[np.intp], count: int) -> npt.NDArray[np.bool_]:
     return (np.bincount(owner, minlength=count) > _MOST_PIECES)[owner]
 
 
-def _halved(
-    pieces: Box, steepness: Array, ranges: Array
-) -> tuple[Box, npt.NDArray[np.intp]]:
+def _halved(pieces: Box, steepness: Array, ranges: Array) -> tuple[Box, npt.NDArray[np.intp]]:
     """Return every piece in two halves, along the name that matters most; points stay whole.
 
     With them, for each half, the row of the piece it is of.
