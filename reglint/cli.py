@@ -18,7 +18,7 @@ from typing import Any, TypeVar
 import click
 
 from reglint import __version__, comparisons, reports
-from reglint.errors import UsageError
+from reglint.errors import ReaderGoneError, UsageError
 from reglint.finding import Outcome, Run
 from reglint.judge import Case, Wanted
 from reglint.kind import Kind
@@ -356,7 +356,7 @@ def main() -> None:
     except (click.Abort, KeyboardInterrupt):
         click.echo("reglint: stopped; no report was written", err=True)
         status = 130
-    except BrokenPipeError:
+    except ReaderGoneError:
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         status = 141
     sys.exit(status if isinstance(status, int) else 0)

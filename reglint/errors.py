@@ -5,7 +5,8 @@
     ├── DimensionError           an operation joins dimensions that do not fit
     ├── FormulaError             a formula is not in the language; knows the column
     ├── SolveError               an equation has no root between its bounds
-    └── UsageError               the command cannot do what it was asked
+    ├── UsageError               the command cannot do what it was asked
+    └── ReaderGoneError          nobody reads the report any more
 
 A mistake in somebody's file ends as a finding or a problem with a place. These
 exceptions carry the sentence; whoever knows the file adds the place.
@@ -42,3 +43,7 @@ class SolveError(ReglintError):
 
 class UsageError(ReglintError):
     """A command that cannot do what it was asked."""
+
+
+class ReaderGoneError(ReglintError):
+    """A report whose reader stopped reading, as ``head`` does: it has read enough."""

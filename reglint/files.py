@@ -28,6 +28,8 @@ class Folder:
 def read_bytes(path: Path) -> bytes | str:
     """Return a file's bytes, no more than one past the limit, or why it cannot be read."""
     try:
+        if not (path.is_file() or path.is_dir()) and path.exists():
+            return "this is no plain file"  # reading a pipe would wait for ever
         with path.open("rb") as file:
             return file.read(MOST_BYTES + 1)
     except IsADirectoryError:

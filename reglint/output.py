@@ -5,22 +5,35 @@ import sys
 import tempfile
 from pathlib import Path
 
-from reglint.errors import UsageError
+from reglint.errors import ReaderGoneError, UsageError
 
 
 def write(text: str, out: Path | None) -> None:
     """Write a report; a file is replaced only once the new one is complete.
 
-    Raises `UsageError` where the file cannot be written; an older report survives.
+    Raises `UsageError` where the file cannot be written; an older report survives. Raises
+    `ReaderGoneError` where standard output is read no further.
     """
-    if out is None:
-        sys.stdout.write(text)
-        sys.stdout.flush()
-        return
     try:
-        _replace(text, out)
+        _print(text) if out is None else _replace(text, out)
+    except BrokenPipeError as error:
+        raise ReaderGoneError(str(error)) from error
     except OSError as error:
-        raise UsageError(f"{out} cannot be written: {error.strerror or error}") from error
+        what = out or "the report"
+        raise UsageError(f"{what} cannot be written: {error.strerror or error}") from error
+
+
+def _print(text: str) -> None:
+    """Write all of a text to standard output.
+
+    Where Python is told not to buffer, a text's own write ends early without a word once the
+    reader is gone or the disk is full; writing what is left then raises what is wrong.
+    """
+    sys.stdout.flush()
+    left = memoryview(text.encode("utf-8", "backslashreplace"))
+    while left:
+        left = left[sys.stdout.buffer.write(left) :]
+    sys.stdout.buffer.flush()
 
 
 def _replace(text: str, out: Path) -> None:
