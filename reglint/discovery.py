@@ -2,7 +2,6 @@
 
 import os
 import re
-import subprocess
 from collections.abc import Iterator
 from functools import cache
 from pathlib import Path
@@ -28,6 +27,8 @@ def listed(folder: Path) -> Iterator[tuple[Path, bool]]:
 
 def _git(folder: Path, *words: str) -> set[str] | None:
     """Return the files git lists below a folder, or nothing where there is no repository."""
+    import subprocess  # noqa: PLC0415 -- 5 ms that a check of named files saves
+
     command = ["git", "ls-files", "-z", *words]
     try:
         listing = subprocess.run(command, cwd=folder, capture_output=True, check=True)  # noqa: S603

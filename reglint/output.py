@@ -2,7 +2,6 @@
 
 import os
 import sys
-import tempfile
 from pathlib import Path
 
 from reglint.errors import ReaderGoneError, UsageError
@@ -37,6 +36,8 @@ def _print(text: str) -> None:
 
 
 def _replace(text: str, out: Path) -> None:
+    import tempfile  # noqa: PLC0415 -- 8 ms that a report to standard output saves
+
     handle, name = tempfile.mkstemp(dir=out.parent, prefix=f".{out.name[:40]}.")
     try:
         with os.fdopen(handle, "w", encoding="utf-8", newline="\n") as file:

@@ -7,7 +7,6 @@ first; a repository's own folders add to it and never replace anything in it.
 
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from functools import cache
-from importlib import resources
 from pathlib import Path
 from typing import Literal, TypeAlias, TypeVar
 
@@ -34,7 +33,7 @@ _Build: TypeAlias = Callable[[Document, Path, str, Statements], T]
 @cache
 def built_in() -> Folder:
     """Return the folder of knowledge that comes with reglint: in the wheel, or in a checkout."""
-    inside = Path(str(resources.files("reglint"))) / "rules"
+    inside = Path(__file__).parent / "rules"
     path = inside if inside.is_dir() else inside.parents[1] / "rules"
     return Folder(path, "rules")
 

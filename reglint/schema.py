@@ -8,7 +8,7 @@ engine adds the place.
 import json
 from collections.abc import Iterator, Mapping
 from functools import cache
-from importlib import resources
+from pathlib import Path
 from typing import Any, TypeAlias
 
 from jsonschema import Draft202012Validator
@@ -115,8 +115,8 @@ _Validator: Any = extend(  # type: ignore[no-untyped-call]
 @cache
 def knowledge_schema(name: str) -> Schema:
     """Return the schema of one of the files of `KNOWLEDGE`."""
-    text = resources.files("reglint").joinpath("schemas", f"{name}.json").read_text("utf-8")
-    schema: Schema = json.loads(text)
+    path = Path(__file__).parent / "schemas" / f"{name}.json"
+    schema: Schema = json.loads(path.read_text("utf-8"))
     return schema
 
 
