@@ -177,7 +177,10 @@ def parse(text: str, wanted: str, *, code: bool = False) -> float:
 
 def _value(number: str, stated: Unit) -> float:
     """Return a number in a unit as the nearest double: powers of ten are exact in decimal."""
-    value = float(Decimal(number.replace("−", "-")).scaleb(stated.exponent))
+    try:
+        value = float(Decimal(number.replace("−", "-")).scaleb(stated.exponent))
+    except ArithmeticError:  # the exponents of decimal end somewhere, too
+        value = math.inf
     if stated.decibel:
         value = 10.0 ** (value / 20.0) if value < 1e4 else math.inf  # noqa: PLR2004 -- overflow
     if not math.isfinite(value):
