@@ -20,6 +20,8 @@ from reglint.errors import FormulaError, QuantityError
 from reglint.project import Project
 from reglint.rulebook import built_in
 
+Reader = Callable[[str], None]
+
 #: Pieces that mean something to one of the readers, put in by chance.
 PIECES = (
     *("{", "}", "[", "]", ": ", ":", "- ", "---\n", "...", "#", "&a ", "*a", "!!str ", "<<: *a"),
@@ -61,18 +63,16 @@ def _formula(text: str) -> None:
         return
 
 
-class _Spec:
-    """Reads a spec in a project of its own."""
+def _spec(folder: Path) -> Reader:
+    """Return a reader of specs in a project of its own."""
+    project, path = Project(folder), folder / "fuzzed.reg.yaml"
 
-    def __init__(self) -> None:
-        self.folder = tempfile.TemporaryDirectory()
-        self.project = Project(Path(self.folder.name))
-
-    def __call__(self, text: str) -> None:
-        path = Path(self.folder.name) / "fuzzed.reg.yaml"
+    def read(text: str) -> None:
         path.write_bytes(text.encode("utf-8", "surrogatepass"))
-        cases, problems = self.project.read(path)
+        cases, problems = project.read(path)
         assert cases or problems, "neither a spec nor a problem"
+
+    return read
 
 
 def _seeds(*patterns: str) -> list[str]:
@@ -85,11 +85,11 @@ def _seeds(*patterns: str) -> list[str]:
 
 _SPEC = _seeds("zener-shunt/kind.yaml")[0].partition("\nsample:\n")[2]
 #: Each target with the texts that are spoilt for it.
-TARGETS: Mapping[str, tuple[Callable[[], Callable[[str], None]], Sequence[str]]] = {
-    "document": (lambda: _document, _seeds("*/*.yaml", "parts/*.yaml")),
-    "quantity": (lambda: _quantity, ["12 V ± 10 %", "4.7 kV", "-10 V +1/-0.5 V", "32 dB"]),
-    "formula": (lambda: _formula, ["max(0 V, a.b / (1 - 2e-3 * c)) ** 2", "25 degC + x", "-a"]),
-    "spec": (_Spec, [_SPEC.replace("\n  ", "\n")[2:]]),
+TARGETS: Mapping[str, tuple[Callable[[Path], Reader], Sequence[str]]] = {
+    "document": (lambda _: _document, _seeds("*/*.yaml", "parts/*.yaml")),
+    "quantity": (lambda _: _quantity, ["12 V ± 10 %", "4.7 kV", "-10 V +1/-0.5 V", "32 dB"]),
+    "formula": (lambda _: _formula, ["max(0 V, a.b / (1 - 2e-3 * c)) ** 2", "25 degC + x", "-a"]),
+    "spec": (_spec, [_SPEC.replace("\n  ", "\n")[2:]]),
 }
 
 
@@ -109,17 +109,22 @@ def spoilt(seed: str, random: Random) -> str:
 def fuzz(target: str, seconds: float, number: int = 0) -> int:
     """Spoil seeds for some seconds and return how many were tried; a find is raised."""
     (make, seeds), random, tried = TARGETS[target], Random(number), 0
-    read, start = make(), time.perf_counter()
-    while (now := time.perf_counter()) < start + seconds:
-        text = spoilt(random.choice(seeds), random)
-        try:
-            read(text)
-        except Exception as error:
-            raise AssertionError(f"{target}: {error!r} for {text!r}") from error
-        if time.perf_counter() - now > 2.0:
-            raise AssertionError(f"{target}: over two seconds for {text!r}")
-        tried += 1
+    with tempfile.TemporaryDirectory() as folder:
+        read, end = make(Path(folder)), time.perf_counter() + seconds
+        while time.perf_counter() < end:
+            _try(target, read, spoilt(random.choice(seeds), random))
+            tried += 1
     return tried
+
+
+def _try(target: str, read: Reader, text: str) -> None:
+    start = time.perf_counter()
+    try:
+        read(text)
+    except Exception as error:
+        raise AssertionError(f"{target}: {error!r} for {text!r}") from error
+    if time.perf_counter() - start > 2.0:
+        raise AssertionError(f"{target}: over two seconds for {text!r}")
 
 
 def main() -> None:
@@ -132,9 +137,10 @@ def main() -> None:
     if wanted.atheris:
         import atheris  # type: ignore[import-not-found]  # noqa: PLC0415 -- not installed with us
 
-        read = TARGETS[wanted.atheris][0]()
-        atheris.Setup(sys.argv[:1], lambda data: read(data.decode("utf-8", "replace")))
-        atheris.Fuzz()
+        with tempfile.TemporaryDirectory() as folder:
+            read = TARGETS[wanted.atheris][0](Path(folder))
+            atheris.Setup(sys.argv[:1], lambda data: read(data.decode("utf-8", "replace")))
+            atheris.Fuzz()
     for target in TARGETS:
         print(target, fuzz(target, wanted.seconds, wanted.seed), flush=True)
 

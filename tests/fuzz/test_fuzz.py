@@ -33,6 +33,6 @@ def test_a_find_is_told_with_its_text(monkeypatch: pytest.MonkeyPatch) -> None:
     def broken(text: str) -> None:
         raise KeyError(text)
 
-    monkeypatch.setitem(FUZZ.TARGETS, "broken", (lambda: broken, ["a"]))
+    monkeypatch.setitem(FUZZ.TARGETS, "broken", (lambda _: broken, ["a"]))
     with pytest.raises(AssertionError, match="broken: KeyError"):
         FUZZ.fuzz("broken", 1.0)
