@@ -139,11 +139,10 @@ def evaluate(node: Expression, names: Callable[[str], T], arithmetic: Arithmetic
 
     Raises `FormulaError` at the operation whose dimensions do not fit.
     """
-    match node:
-        case Name(name):
-            return names(name)
-        case Number(value, dimension):
-            return arithmetic.constant(value, dimension)
+    if isinstance(node, Name):  # told by isinstance, as this runs for every name of a formula
+        return names(node.name)
+    if isinstance(node, Number):
+        return arithmetic.constant(node.value, node.dimension)
     try:
         match node:
             case Operation(sign, left, Number(power)) if sign == "**":

@@ -6,6 +6,7 @@ say (constants, functions, roots) is its `Arithmetic`.
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
+from functools import cache
 from typing import Any, Generic, Protocol, TypeAlias, TypeVar
 
 import numpy as np
@@ -142,9 +143,21 @@ def _interval_root(equation: Equation[Interval]) -> Interval:
     return roots.enclosed_root(equation.residual, guess, *equation.ends())
 
 
+@cache
+def _thin(value: float) -> Interval:
+    """Return a constant as an interval, made once: formulas are evaluated thousands of times."""
+    return interval.lift(value)
+
+
+@cache
+def _still(value: float) -> Gradient:
+    """Return a constant as a gradient, made once."""
+    return gradient.raised(value)
+
+
 #: Intervals: everything a value could be in a box.
 INTERVALS: Arithmetic[Interval] = Arithmetic(
-    constant=lambda value, _dimension: interval.lift(value),
+    constant=lambda value, _dimension: _thin(value),
     functions={**interval.FUNCTIONS, "off_preferred": interval.thin_only(_off_preferred)},
     solve=_interval_root,
     margin=interval.margin,
@@ -163,7 +176,7 @@ def _gradient_root(equation: Equation[Gradient]) -> Gradient:
 
 #: Gradients: what a value could be in a box, and how it changes with each swept name.
 GRADIENTS: Arithmetic[Gradient] = Arithmetic(
-    constant=lambda value, _dimension: gradient.raised(value),
+    constant=lambda value, _dimension: _still(value),
     functions={
         **gradient.FUNCTIONS,
         "off_preferred": gradient.thin_only(INTERVALS.functions["off_preferred"]),

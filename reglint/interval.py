@@ -33,7 +33,7 @@ def _operator(
 
     @wraps(join)
     def joined(one: "Interval", other: Like) -> "Interval":
-        if not isinstance(other, Interval | np.ndarray | np.generic | float | int):
+        if not isinstance(other, _NUMBERS):
             return NotImplemented
         with np.errstate(all="ignore"):  # infinities and NaN are values here
             return join(one, lift(other))
@@ -78,13 +78,9 @@ class Interval:
     @_operator
     def __mul__(self, other: "Interval") -> "Interval":
         """Return an enclosure of the products."""
-        if (self.low >= 0.0).all() and (other.low >= 0.0).all():
-            low, high = _product(self.low, other.low), _product(self.high, other.high)
-            return Interval(_down(low), _up(high))
-        ends = [
-            _product(one, two) for one in (self.low, self.high) for two in (other.low, other.high)
-        ]
-        return Interval(_down(reduce(np.minimum, ends)), _up(reduce(np.maximum, ends)))
+        products = _products(self, other)
+        low, high = (pick.reduce(products, axis=(0, 1)) for pick in (np.minimum, np.maximum))
+        return Interval(_down(low), _up(high))
 
     @_operator
     def __truediv__(self, other: "Interval") -> "Interval":
@@ -129,6 +125,10 @@ class Interval:
         return np.asarray((self.low <= value) & (value <= self.high))
 
 
+#: What an operator takes on its right; a tuple, as a union is built anew in every call.
+_NUMBERS = (Interval, np.ndarray, np.generic, float, int)
+
+
 def lift(value: Like) -> Interval:
     """Return an interval as it is, and a number or array as thin intervals."""
     if isinstance(value, Interval):
@@ -161,11 +161,18 @@ def where(choose: Mask, one: Like, other: Like) -> Interval:
 
 def _down(value: Array) -> Array:
     """Round down. A sum that gives zero is exactly zero, and nothing else may come here as zero."""
-    return np.where(value == 0.0, 0.0, np.nextafter(value, -np.inf))
+    below = np.nextafter(value, -np.inf)
+    return below if _no_zero(value) else np.where(value == 0.0, 0.0, below)
 
 
 def _up(value: Array) -> Array:
-    return np.where(value == 0.0, 0.0, np.nextafter(value, np.inf))
+    above = np.nextafter(value, np.inf)
+    return above if _no_zero(value) else np.where(value == 0.0, 0.0, above)
+
+
+def _no_zero(value: Array) -> bool:
+    """Tell whether no element is zero: counting costs least on the few elements of one spec."""
+    return bool(np.count_nonzero(value) == np.size(value))
 
 
 def _kept(result: Array, zero: Mask) -> Array:
@@ -174,14 +181,26 @@ def _kept(result: Array, zero: Mask) -> Array:
     return np.where(vanished, np.copysign(_LEAST, result), result)
 
 
-def _product(one: Array, other: Array) -> Array:
-    """Return products of ends: zero times infinity is zero, and nothing else becomes zero."""
-    product = one * other
-    doubtful = (product == 0.0) | np.isnan(product)
-    if not doubtful.any():
-        return product
-    zero = (one == 0.0) | (other == 0.0)
-    return _kept(np.where(zero & ~_undefined(one, other), 0.0, product), zero)
+def _products(one: Interval, other: Interval) -> Array:
+    """Return the products of both ends with both ends, in one array of shape (2, 2, *S).
+
+    Zero times infinity is zero, and nothing else becomes zero.
+    """
+    dimensions = max(np.ndim(one.low), np.ndim(other.low))
+    first, second = _stacked(one, dimensions)[:, None], _stacked(other, dimensions)[None]
+    products: Array = first * second
+    if np.count_nonzero(np.abs(products) > 0.0) == products.size:
+        return products
+    zero = (first == 0.0) | (second == 0.0)
+    return _kept(np.where(zero & ~_undefined(first, second), 0.0, products), zero)
+
+
+def _stacked(value: Interval, dimensions: int) -> Array:
+    """Return both ends in one array, with axes of length one to make up the dimensions."""
+    shape = np.shape(value.low)
+    ends = np.empty((2, *(1,) * (dimensions - len(shape)), *shape))
+    ends[0], ends[1] = value.low, value.high
+    return ends
 
 
 def _reciprocal(value: Interval) -> Interval:

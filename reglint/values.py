@@ -49,7 +49,8 @@ class Values(Generic[T]):
         if name in self._known:
             return self._known[name]
         if self._outer and self._is_outer(name):
-            return self._outer(name)
+            value = self._known[name] = self._outer(name)
+            return value
         if name in self._pending:
             raise FormulaError(f"{name} is defined in terms of itself")
         self._pending.add(name)
