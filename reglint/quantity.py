@@ -136,7 +136,7 @@ def _atom(text: str, whole: str) -> tuple[Dimension, int]:
         text = text.replace(sign, "ohm")
     for name, (of, _, prefixes) in _UNITS.items():
         prefix = text.removesuffix(name)
-        if text.endswith(name) and (not prefix or prefix in prefixes):
+        if text.endswith(name) and prefix in ("", *prefixes):
             return of, _PREFIXES[prefix]
     raise QuantityError(_advice(text, whole))
 

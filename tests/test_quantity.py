@@ -49,6 +49,12 @@ def test_a_quantity_is_read_in_si(text: str, wanted: str, value: float) -> None:
         ("nan V", "V", "nan V is not a number; write one, for example 4.7 V"),
         (".inf V", "V", ".inf V is not a number; write one, for example 4.7 V"),
         ("1e999 V", "V", "1e999 V is too large for a number"),
+        (
+            "200 mkV",
+            "V",
+            "mkV is not a unit known here; the nearest known one is mV"
+            " (known: V, A, W, ohm, F, H, S, Hz, s, K, °C, %, ppm)",
+        ),
         ("1e99999999999999999999 V", "V", "1e99999999999999999999 V is too large for a number"),
         ("25 K", "degC", "25 K: write a temperature in °C and a difference of temperatures in K"),
         ("1.5.2 V", "V", "1.5.2 V is not a quantity; write a number and a unit, for example 4.7 V"),
