@@ -52,8 +52,10 @@ def test_a_quantity_is_read_in_si(text: str, wanted: str, value: float) -> None:
         (
             "200 mkV",
             "V",
-            "mkV is not a unit known here; the nearest known one is mV"
-            " (known: V, A, W, ohm, F, H, S, Hz, s, K, °C, %, ppm)",
+            (
+                "mkV is not a unit known here; the nearest known one is mV"
+                " (known: V, A, W, ohm, F, H, S, Hz, s, K, °C, %, ppm)"
+            ),
         ),
         ("1e99999999999999999999 V", "V", "1e99999999999999999999 V is too large for a number"),
         ("25 K", "degC", "25 K: write a temperature in °C and a difference of temperatures in K"),
