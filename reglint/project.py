@@ -186,7 +186,7 @@ class Project:
     def window(self, case: Case, field: str, tried: Mapping[float, str], today: date) -> Window:
         """Return what each value tried of one field comes to."""
         changes = [{field: text} for text in tried.values()]
-        verdicts = self._judged_variants(case, changes, Wanted(today, care=Care.DECIDED))
+        verdicts = self._judged_variants(case, changes, today)
         return window_of(case.spec, field, list(tried), verdicts)
 
     def relaxations(self, case: Case, window: Window, today: date) -> list[Relaxation]:
@@ -194,27 +194,40 @@ class Project:
         tried = trials(case.spec, window.field)
 
         def holding(
-            moves: Sequence[Move], values: Sequence[float], care: Care
+            moves: Sequence[Move], values: Sequence[float], *, proven: bool
         ) -> list[tuple[float, ...]]:
             pairs = [(lever, to, value) for lever, to in moves for value in values]
             changes = [{each.path: each.text(to), window.field: tried[v]} for each, to, v in pairs]
-            verdicts = self._judged_variants(case, changes, Wanted(today, care=care))
+            verdicts = self._judged_variants(case, changes, today, proven=proven)
             rows = (verdicts[at : at + len(values)] for at in range(0, len(pairs), len(values)))
             return [window_of(case.spec, window.field, values, row).holding() for row in rows]
 
         rules = [case.rules[each] for each in window.clash()]
         some = levers(case.spec, case.circuit, rules, window.field)
-        found = nearest(some, lambda moves: holding(moves, window.gap(), Care.SEARCHED))
-        return list(verified(found, lambda moves: holding(moves, list(tried), Care.DECIDED)))
+        found = nearest(some, lambda moves: holding(moves, window.gap(), proven=False))
+        return list(verified(found, lambda moves: holding(moves, list(tried), proven=True)))
 
     def _judged_variants(
-        self, case: Case, changes: Sequence[Mapping[str, str]], wanted: Wanted
+        self,
+        case: Case,
+        changes: Sequence[Mapping[str, str]],
+        today: date,
+        *,
+        proven: bool = True,
     ) -> list[Verdict | None]:
-        """Return the verdict on a spec under each change; none on one that is unsound."""
+        """Return the verdict on a spec under each change; none on one that is unsound.
+
+        A witness is enough for a failure; only what has none is proven, where that is wanted.
+        """
         variants = self.variants(case, changes)
-        sound = [each for each in variants if each is not None]
-        verdicts = iter(judge(sound, wanted))
-        return [None if each is None else next(verdicts) for each in variants]
+        sound = [row for row, each in enumerate(variants) if each is not None]
+        found: list[Verdict | None] = [None] * len(variants)
+        for care in (Care.SEARCHED, Care.DECIDED) if proven else (Care.SEARCHED,):
+            cases = [each for row in sound if (each := variants[row])]
+            for row, verdict in zip(sound, judge(cases, Wanted(today, care=care)), strict=True):
+                found[row] = verdict
+            sound = [row for row in sound if (v := found[row]) and v.outcome is not Outcome.FAIL]
+        return found
 
     def problems(self) -> list[Problem]:
         """Return what is wrong with the settings and knowledge met so far."""
