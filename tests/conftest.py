@@ -4,15 +4,20 @@ from collections.abc import Callable, Mapping
 from datetime import date
 from pathlib import Path
 
+import numpy as np
 import pytest
 from hypothesis import settings
 
+from reglint.box import Box
 from reglint.finding import Run
-from reglint.judge import Wanted
+from reglint.formula import parse
+from reglint.judge import Case, Wanted
+from reglint.kind import Condition
 from reglint.project import Project
 from reglint.rulebook import Rulebook
 from reglint.tree import Mapping as MappingNode
 from reglint.tree import Node, Scalar
+from reglint.worstcase import Measure
 
 TODAY = date(2026, 12, 1)
 
@@ -90,3 +95,37 @@ def check(tmp_path: Path) -> Check:
         return Project(tmp_path).check(paths, Wanted(today, everything, extents))
 
     return run
+
+
+@pytest.fixture
+def case(tmp_path: Path, sample: Sample) -> Case:
+    """Return the sample of the Zener shunt regulator with what it is judged by."""
+    path = tmp_path / "sample.reg.yaml"
+    path.write_text(sample(), encoding="utf-8")
+    (found,), problems = Project(tmp_path).read(path)
+    assert not problems
+    return found
+
+
+@pytest.fixture
+def swept(case: Case) -> Callable[..., Box]:
+    """Return a maker of boxes over names of no circuit, each spec with its range of every name."""
+
+    def make(**ranges: tuple[float, float] | list[tuple[float, float]]) -> Box:
+        listed = [each if isinstance(each, list) else [each] for each in ranges.values()]
+        low, high = np.array(listed, dtype=float).transpose(2, 1, 0)
+        specs, free = [case.spec] * len(low), Condition("free", "Nothing is fixed.")
+        return Box(case.circuit, free, specs, tuple(ranges), low, 0.5 * (low + high), high, {})
+
+    return make
+
+
+@pytest.fixture
+def measure() -> Callable[[str], Measure]:
+    """Return a maker of measures from formulas."""
+
+    def make(text: str) -> Measure:
+        formula = parse(text)
+        return lambda values: values.of(formula)
+
+    return make
