@@ -70,7 +70,7 @@ def test_a_notch_between_the_corners_is_met(swept: Swept, measure: Formula) -> N
 
 
 def test_a_proof_that_would_not_end_is_given_up(swept: Swept, measure: Formula) -> None:
-    """The difference xy - yx is zero; no halving encloses it exactly, and its bound stays below zero."""
+    """That xy - yx is zero no halving encloses exactly: its bound stays below zero."""
     found = prove(swept(x=(0.0, 1.0), y=(0.0, 1.0)), measure("x * y - y * x"), 0.0)
     assert found.value.tolist() == [0.0]
     assert -0.2 < found.bound[0] < 0.0
