@@ -33,10 +33,10 @@ def test_a_product_is_worst_inside_its_range(swept: Swept, measure: Formula) -> 
 def test_parallel_resistors_are_bounded_by_their_corners(
     text: str, least: float, point: list[float], swept: Swept, measure: Formula
 ) -> None:
-    """The bound meets the corner, though each resistor stands in the formula twice."""
+    """The bound comes close to the corner, though each resistor stands in the formula twice."""
     found = prove(swept(r1=(10.0, 20.0), r2=(20.0, 40.0)), measure(text), INF, Care.SHOWN)
     assert found.value == pytest.approx([least], rel=1e-14)
-    assert found.bound == pytest.approx([least], rel=1e-12)
+    assert least - TOLERANCE * abs(least) <= found.bound[0] <= least
     assert found.point[0].tolist() == point
 
 
