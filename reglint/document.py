@@ -191,6 +191,8 @@ class _Trees:
         index = error.context_mark.index if error.context_mark else stop
         if at == "here" or (at == "line" and "\n" not in text[index:stop]):
             index = stop
+        # An error at the end stands behind the last text, where an editor can show it.
+        index = min(index, len(text.rstrip(" \r\n")))
         line = text[text.rfind("\n", 0, index) + 1 :].partition("\n")[0]
         self._complain(place(text, index), f"{sentence} (in: {short(line.strip())})")
         return stop

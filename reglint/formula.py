@@ -13,9 +13,9 @@ from dataclasses import dataclass, replace
 from typing import Any, TypeAlias, TypeVar, cast
 
 from reglint.dimension import Dimension
-from reglint.errors import DimensionError, FormulaError
+from reglint.errors import DimensionError, FormulaError, QuantityError
 from reglint.functions import NAMES, Arithmetic
-from reglint.quantity import literal_at
+from reglint.quantity import Unit, literal_at
 from reglint.source import TOP, Complaint, Span
 
 T = TypeVar("T")
@@ -113,6 +113,8 @@ _JOIN: Mapping[str, Callable[[Any, Any], Any]] = {
 _NUMBER = re.compile(r"(?<![\w.])[0-9.]")
 #: Letters that only look like ours, quotes, comments and line ends stay outside.
 _FOREIGN = re.compile(r"[^ !(-+\--9<=>A-Z_a-z,]")
+#: Python joins the words around such a dot, but then the name is not in the text.
+_PARTED = re.compile(r"\. ")
 
 
 def parse(text: str, span: Span = TOP) -> Formula:
@@ -217,7 +219,7 @@ def _without_units(text: str) -> tuple[str, dict[int, Number]]:
     bare, literals, position = text, {}, 0
     while found := _NUMBER.search(text, position):
         offset = found.start()
-        literal = literal_at(text, offset)
+        literal = _literal(text, offset)
         if literal is None:
             raise FormulaError("this is not a number such as 4.7 or 25 degC", offset)
         value, unit, position = literal
@@ -225,7 +227,16 @@ def _without_units(text: str) -> tuple[str, dict[int, Number]]:
         bare = f"{bare[:offset]}0{' ' * (position - offset - 1)}{bare[position:]}"
     if foreign := _FOREIGN.search(bare):
         raise FormulaError(f"{foreign[0]!r} has no place in a formula", foreign.start())
+    if parted := _PARTED.search(bare):
+        raise FormulaError("a dotted name is written without blanks", parted.start())
     return bare, literals
+
+
+def _literal(text: str, offset: int) -> tuple[float, Unit, int] | None:
+    try:
+        return literal_at(text, offset)
+    except QuantityError as error:
+        raise FormulaError(str(error), offset) from error
 
 
 def _python_tree(bare: str) -> ast.expr:
@@ -245,7 +256,7 @@ def _python_tree(bare: str) -> ast.expr:
 
 def _copy(node: ast.expr, literals: Mapping[int, Number], depth: int = 0) -> Expression:
     """Copy what the language knows of Python's tree; refuse the rest at its column."""
-    offset = node.col_offset - 1
+    offset = max(0, node.col_offset - 1)  # the bracket around it all is not in the text
     if depth > MOST_DEPTH:
         raise FormulaError("this formula is nested too deeply", offset)
 

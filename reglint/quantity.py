@@ -15,6 +15,7 @@ from reglint import dimension
 from reglint.dimension import KELVIN, ONE, Dimension
 from reglint.errors import QuantityError
 from reglint.nearest import hint
+from reglint.plaintext import short
 
 _PREFIXES: Mapping[str, int] = {
     "": 0,
@@ -60,6 +61,8 @@ _EXAMPLES: Mapping[str, str] = {
 
 #: The longest number that is still one somebody measured.
 _MOST_DIGITS = 40
+#: Some patterns take the square of a text's length in steps; nobody writes so long a quantity.
+_MOST_CHARACTERS = 120
 _NUMBER = r"[-−+]?(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][-−+]?[0-9]+)?"
 _QUANTITY = re.compile(rf"({_NUMBER})[ ]?([^ 0-9.+−-][^ ]*|1/[^ ]+)?")
 _LITERAL = re.compile(r"(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][-+]?[0-9]+)?(?![\w.])")
@@ -160,6 +163,7 @@ def parse(text: str, wanted: str, *, code: bool = False) -> float:
 
     With ``code``, IEC 60062 codes such as ``4k7`` are read. Raises `QuantityError`.
     """
+    _check_length(text)
     of = unit(wanted)
     if code and (coded := _coded(text, wanted)) is not None:
         return coded
@@ -173,6 +177,12 @@ def parse(text: str, wanted: str, *, code: bool = False) -> float:
     if stated.dimension != of.dimension or stated.celsius != of.celsius:
         raise QuantityError(_wrong_dimension(text, stated, of))
     return _value(number, stated)
+
+
+def _check_length(text: str) -> None:
+    if len(text) > _MOST_CHARACTERS:
+        said = f"is longer than {_MOST_CHARACTERS} characters: write a number and a unit"
+        raise QuantityError(f"{short(text)} {said}")
 
 
 def _value(number: str, stated: Unit) -> float:
@@ -224,6 +234,8 @@ def _coded(text: str, wanted: str) -> float | None:
     found = _CODE.fullmatch(text)
     if found is None or found[2] not in letters or not (found[1] or found[3]):
         return None
+    if len(text) > _MOST_DIGITS:
+        return None  # refused as any other number of so many digits
     number = f"{found[1] or 0}.{found[3] or 0}"
     return float(Decimal(number).scaleb(letters[found[2]]))
 
@@ -236,6 +248,7 @@ def parse_range(text: str, wanted: str, *, code: bool = False) -> Range:
 
     Raises `QuantityError`.
     """
+    _check_length(text)
     if found := _AROUND_ZERO.fullmatch(text):
         nominal = 0.0
         above = below = _deviation(found[1], nominal, wanted)
@@ -250,6 +263,8 @@ def parse_range(text: str, wanted: str, *, code: bool = False) -> Range:
     else:
         nominal = parse(text, wanted, code=code)
         above = below = 0.0
+    if not math.isfinite(nominal - below) or not math.isfinite(nominal + above):
+        raise QuantityError(f"{text} reaches beyond the largest number")
     return Range(nominal - below, nominal, nominal + above)
 
 
@@ -275,7 +290,7 @@ def range_of(low: float | None, nominal: float | None, high: float | None, wante
     """
     if low is None or high is None:
         raise QuantityError(f"{'min' if low is None else 'max'} is missing from the range")
-    middle = (low + high) / 2.0 if nominal is None else nominal
+    middle = low / 2.0 + high / 2.0 if nominal is None else nominal
     if not low <= middle <= high:
         told = ", ".join(
             f"{name} {render(value, wanted)}"

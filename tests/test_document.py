@@ -174,6 +174,7 @@ REFUSED: list[tuple[str, str | bytes, list[str]]] = [
     ("open bracket", "a: [1,\n  2\nb: 3\n", [f"1:4 {BRACKET} (in: a: [1,)"]),
     ("open bracket at the end", "a: [1", [f"1:4 {BRACKET} (in: a: [1)"]),
     ("two commas", "a: [1,,2]\n", ["1:7 a value is missing before this (in: a: [1,,2])"]),
+    ("comma at the end", "a: [1,\n\n\n", ["1:7 a value is missing before this (in: a: [1,)"]),
     ("glued list", "a: {b:[1]}\n", ["1:6 put a blank after the colon (in: a: {b:[1]})"]),
     ("glued question", "a: {b:?1}\n", ["1:6 put a blank after the colon (in: a: {b:?1})"]),
     ("open quote", "a: 'x\nb: 2\n", ["1:4 this quote is not closed (in: a: 'x)"]),

@@ -1,5 +1,7 @@
 """Quantities: what the gate reads, and what it refuses with advice."""
 
+import time
+
 import pytest
 
 from reglint.errors import QuantityError
@@ -148,3 +150,34 @@ def test_a_value_is_rendered_with_a_fitting_prefix(value: float, wanted: str, te
 def test_a_unit_has_its_dimension() -> None:
     """A quotient of units has the quotient of their dimensions."""
     assert str(unit("mV/mA").dimension) == "ohm"
+
+
+LONG = "is longer than 120 characters: write a number and a unit"
+
+
+@pytest.mark.parametrize(
+    ("text", "message"),
+    [
+        ("±" * 300_000 + "\n", f"{'±' * 47}… {LONG}"),
+        ("1" * 121, f"{'1' * 47}… {LONG}"),
+        (
+            "9" * 50 + "R",
+            f"{'9' * 50}R is not a quantity; write a number and a unit, for example 4.7 ohm",
+        ),
+        ("1e308 ohm ± 200 %", "1e308 ohm ± 200 % reaches beyond the largest number"),
+        ("1e308 ohm +90/-10 %", "1e308 ohm +90/-10 % reaches beyond the largest number"),
+    ],
+    ids=["long range", "long number", "long code", "even", "uneven"],
+)
+def test_what_is_too_much_is_refused_at_once(text: str, message: str) -> None:
+    """A text too long to be a quantity, or a value no number can hold, is refused quickly."""
+    start = time.perf_counter()
+    with pytest.raises(QuantityError) as refused:
+        parse_range(text, "ohm", code=True)
+    assert time.perf_counter() - start < 1.0
+    assert str(refused.value) == message
+
+
+def test_the_middle_of_the_largest_numbers_is_a_number() -> None:
+    """The middle is taken of halves, whose sum cannot be too large."""
+    assert range_of(1e308, None, 1.5e308, "V") == Range(1e308, 1.25e308, 1.5e308)
