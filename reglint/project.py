@@ -5,6 +5,7 @@ from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from dataclasses import field as dataclass_field
 from datetime import date
+from itertools import islice
 from pathlib import Path
 
 from reglint.discovery import is_spec_name, listed, matches
@@ -137,12 +138,13 @@ class Project:
         """Judge some specs; if they are to be mended, the first that fail are told what holds."""
         verdicts = judge(cases, wanted)
         self._account(cases, verdicts, wanted)
-        for case, verdict in zip(cases, verdicts, strict=True):
-            if verdict.outcome is Outcome.FAIL and mend and self.mended < _MOST_MENDED:
-                self.mended += 1
-                yield _bare(replace(verdict, windows=self._windows(case, verdict, wanted)))
-            else:
-                yield _bare(verdict)
+        rows = [row for row, each in enumerate(verdicts) if each.outcome is Outcome.FAIL]
+        rows = rows[: _MOST_MENDED - self.mended] if mend else []
+        self.mended += len(rows)
+        mended = self._windows([(cases[row], verdicts[row]) for row in rows], wanted.today)
+        windows = dict(zip(rows, mended, strict=True))
+        for row, verdict in enumerate(verdicts):
+            yield _bare(replace(verdict, windows=windows.get(row, {})))
 
     def _account(self, cases: Sequence[Case], verdicts: list[Verdict], wanted: Wanted) -> None:
         """Give verdicts their accounts, the worst first while there is room for them."""
@@ -170,23 +172,29 @@ class Project:
         return found
 
     def _windows(
-        self, case: Case, verdict: Verdict, wanted: Wanted
-    ) -> dict[str, tuple[float, ...]]:
-        """Return the holding values of each field that a failing rule names for adjustment."""
-        failing = (each.rule for each in verdict.findings if each.outcome is Outcome.FAIL)
-        fields = {field for rule in failing for field in case.rules[rule].adjust}
-        found = {}
-        for field in sorted(fields):
-            tried = trials(case.spec, field)
-            if tried:
-                window = self.window(case, field, tried, wanted.today)
-                found[field] = window.holding()
+        self, failing: Sequence[tuple[Case, Verdict]], today: date
+    ) -> list[dict[str, tuple[float, ...]]]:
+        """Return, for each failing spec, what holds of the fields its failing rules name.
+
+        All values of all of them are judged together: that costs little more than one.
+        """
+        asked = [
+            (row, field, tried)
+            for row, (case, verdict) in enumerate(failing)
+            for field in _adjusted(case, verdict)
+            if (tried := trials(case.spec, field))
+        ]
+        pairs = [(failing[row][0], {f: text}) for row, f, tried in asked for text in tried.values()]
+        verdicts = iter(self._judged_variants(pairs, today))
+        found: list[dict[str, tuple[float, ...]]] = [{} for _ in failing]
+        for row, field, tried in asked:
+            own = list(islice(verdicts, len(tried)))
+            found[row][field] = window_of(failing[row][0].spec, field, list(tried), own).holding()
         return found
 
     def window(self, case: Case, field: str, tried: Mapping[float, str], today: date) -> Window:
         """Return what each value tried of one field comes to."""
-        changes = [{field: text} for text in tried.values()]
-        verdicts = self._judged_variants(case, changes, today)
+        verdicts = self._judged_variants([(case, {field: t}) for t in tried.values()], today)
         return window_of(case.spec, field, list(tried), verdicts)
 
     def relaxations(self, case: Case, window: Window, today: date) -> list[Relaxation]:
@@ -198,7 +206,8 @@ class Project:
         ) -> list[tuple[float, ...]]:
             pairs = [(lever, to, value) for lever, to in moves for value in values]
             changes = [{each.path: each.text(to), window.field: tried[v]} for each, to, v in pairs]
-            verdicts = self._judged_variants(case, changes, today, proven=proven)
+            variants = [(case, change) for change in changes]
+            verdicts = self._judged_variants(variants, today, proven=proven)
             rows = (verdicts[at : at + len(values)] for at in range(0, len(pairs), len(values)))
             return [window_of(case.spec, window.field, values, row).holding() for row in rows]
 
@@ -209,17 +218,16 @@ class Project:
 
     def _judged_variants(
         self,
-        case: Case,
-        changes: Sequence[Mapping[str, str]],
+        changes: Sequence[tuple[Case, Mapping[str, str]]],
         today: date,
         *,
         proven: bool = True,
     ) -> list[Verdict | None]:
-        """Return the verdict on a spec under each change; none on one that is unsound.
+        """Return the verdict on each spec under its change; none on one that is unsound.
 
         A witness is enough for a failure; only what has none is proven, where that is wanted.
         """
-        variants = self.variants(case, changes)
+        variants = [each for case, change in changes for each in self.variants(case, [change])]
         sound = [row for row, each in enumerate(variants) if each is not None]
         found: list[Verdict | None] = [None] * len(variants)
         for care in (Care.SEARCHED, Care.DECIDED) if proven else (Care.SEARCHED,):
@@ -328,6 +336,12 @@ class Project:
                 if not tracked:
                     self.untracked.append(each)
                 yield each
+
+
+def _adjusted(case: Case, verdict: Verdict) -> list[str]:
+    """Return the fields that a spec's failing rules name for adjustment."""
+    failing = (each.rule for each in verdict.findings if each.outcome is Outcome.FAIL)
+    return sorted({field for rule in failing for field in case.rules[rule].adjust})
 
 
 def _as_supposed(complaint: Complaint) -> Complaint:
