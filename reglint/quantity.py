@@ -290,7 +290,9 @@ def range_of(low: float | None, nominal: float | None, high: float | None, wante
     """
     if low is None or high is None:
         raise QuantityError(f"{'min' if low is None else 'max'} is missing from the range")
-    middle = low / 2.0 + high / 2.0 if nominal is None else nominal
+    # Halved first, that no sum is too large; kept inside, as the least doubles have no half.
+    half_way = min(max(low / 2.0 + high / 2.0, low), high)
+    middle = half_way if nominal is None else nominal
     if not low <= middle <= high:
         told = ", ".join(
             f"{name} {render(value, wanted)}"

@@ -181,3 +181,9 @@ def test_what_is_too_much_is_refused_at_once(text: str, message: str) -> None:
 def test_the_middle_of_the_largest_numbers_is_a_number() -> None:
     """The middle is taken of halves, whose sum cannot be too large."""
     assert range_of(1e308, None, 1.5e308, "V") == Range(1e308, 1.25e308, 1.5e308)
+
+
+def test_the_least_of_doubles_is_a_range_of_itself() -> None:
+    """The smallest double has no half: its middle is kept inside the range."""
+    least = 5e-324
+    assert range_of(least, None, least, "V") == Range(least, least, least)
